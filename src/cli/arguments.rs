@@ -1,0 +1,120 @@
+//! What was typed.
+
+use chrono::NaiveDate;
+use clap::{Args, Parser, Subcommand, ValueEnum};
+use std::path::PathBuf;
+
+const EXAMPLE: &str = "Example, on the demo roster:
+  acroshift screen rosters/tern-quay-ward.csv --rules uk-wtr,adv-nordic,adv-review,adv-hse --out output/ward
+
+Exit codes: 0 done; 1 findings at or above --fail-on; 2 wrong usage; 3 input errors; 4 the computer refused.";
+
+/// Names the compressed recovery windows of a work roster, with law, advice and model side by side.
+#[derive(Debug, Parser)]
+#[command(name = "acroshift", version, about, arg_required_else_help = true)]
+pub(crate) struct Arguments {
+    /// What to do.
+    #[command(subcommand)]
+    pub(crate) command: Command,
+}
+
+/// The verbs.
+#[derive(Debug, Subcommand)]
+pub(crate) enum Command {
+    /// Screen rosters: which recovery windows are compressed, and why.
+    #[command(after_help = EXAMPLE)]
+    Screen(ScreenOptions),
+}
+
+/// Options of `screen`.
+#[derive(Debug, Args)]
+pub(crate) struct ScreenOptions {
+    /// Rosters: long tables as .csv or .xlsx; - reads standard input.
+    #[arg(required = true, value_name = "ROSTER")]
+    pub(crate) rosters: Vec<PathBuf>,
+
+    /// IANA time zone of the workplace, where the roster names none: Europe/London.
+    #[arg(long, value_name = "IANA")]
+    pub(crate) zone: Option<String>,
+
+    /// First date to use (year-month-day).
+    #[arg(long, value_name = "DATE")]
+    pub(crate) from: Option<NaiveDate>,
+
+    /// Last date to use (year-month-day).
+    #[arg(long, value_name = "DATE")]
+    pub(crate) to: Option<NaiveDate>,
+
+    /// Site file: zone, rules, task light, commute, morning daylight, declared derogations.
+    #[arg(long, value_name = "SITE.toml")]
+    pub(crate) site: Option<PathBuf>,
+
+    /// Rule packs, separated by commas [default: eu-wtd,adv-nordic].
+    #[arg(long, value_name = "PACK,...", value_delimiter = ',')]
+    pub(crate) rules: Vec<String>,
+
+    /// Simulated people; rounded up to a multiple of 8.
+    #[arg(long, value_name = "N", default_value_t = 32, value_parser = clap::value_parser!(u16).range(1..=4096))]
+    pub(crate) members: u16,
+
+    /// Seed of the simulated people.
+    #[arg(long, value_name = "N", default_value_t = 1)]
+    pub(crate) seed: u64,
+
+    /// Threads to use [default: all].
+    #[arg(long, value_name = "N", value_parser = clap::value_parser!(u16).range(1..=1024))]
+    pub(crate) threads: Option<u16>,
+
+    /// For whom the report is.
+    #[arg(long, value_enum, default_value_t = AudienceName::Planner)]
+    pub(crate) audience: AudienceName,
+
+    /// What is printed on standard output.
+    #[arg(long, value_enum, default_value_t = Format::Text)]
+    pub(crate) format: Format,
+
+    /// Folder for report.html, result.json, findings.csv and the Parquet tables.
+    #[arg(long, value_name = "DIR")]
+    pub(crate) out: Option<PathBuf>,
+
+    /// Replace the files of an existing output folder.
+    #[arg(long)]
+    pub(crate) force: bool,
+
+    /// Report on the rest when some rows cannot be used.
+    #[arg(long)]
+    pub(crate) allow_partial: bool,
+
+    /// End with exit code 1 when there are findings at or above this level.
+    #[arg(long, value_enum, value_name = "LEVEL")]
+    pub(crate) fail_on: Option<Level>,
+}
+
+/// For whom the report is.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, ValueEnum)]
+pub(crate) enum AudienceName {
+    /// Scheduler or manager: no physiology beside a name.
+    Planner,
+    /// Occupational health, bound to secrecy.
+    Clinician,
+}
+
+/// What is printed on standard output.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, ValueEnum)]
+pub(crate) enum Format {
+    /// A summary in words.
+    Text,
+    /// The whole result, schema acroshift.screen/1.
+    Json,
+}
+
+/// A level of attention.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, ValueEnum)]
+pub(crate) enum Level {
+    /// Look first.
+    Priority,
+    /// Look next.
+    Review,
+    /// For the record.
+    Note,
+}

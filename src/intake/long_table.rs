@@ -1,0 +1,576 @@
+//! One row per shift: which columns are there, and which instants do they mean?
+//!
+//! Columns, in any order and case: `worker`, then `start` and `end` as date-times, or `date` with `start` and `end` as times of day.
+//! Optional: `team`, `code`, `kind`, `break_min`, `zone`, `commute_min`.
+
+use super::Reading;
+use super::clock_text::{self, DayTime, Moment};
+use super::columns::{Column, Columns};
+use super::table::{Row, Table, short};
+use super::zone_name::zone_named;
+use crate::diagnostic::{Code, Diagnostic, Level};
+use crate::roster::DutyKind;
+use crate::source::{FileId, Origin, OriginId};
+use chrono::{DateTime, Duration, NaiveDate, NaiveDateTime, NaiveTime, Offset, TimeZone, Utc};
+use chrono_tz::Tz;
+
+/// A shift as it stands in one row.
+#[derive(Debug, Clone, PartialEq)]
+pub struct RowShift {
+    /// Worker as written, trimmed.
+    pub worker: String,
+    /// Team as written.
+    pub team: Option<String>,
+    /// First instant.
+    pub start: DateTime<Utc>,
+    /// First instant after it.
+    pub end: DateTime<Utc>,
+    /// Zone of the row.
+    pub zone: Tz,
+    /// What kind of duty.
+    pub kind: DutyKind,
+    /// Code as written.
+    pub code: Option<String>,
+    /// Break, minutes.
+    pub break_min: Option<u16>,
+    /// Commute each way, minutes.
+    pub commute_min: Option<u16>,
+    /// Which row.
+    pub origin: OriginId,
+    /// Its place in words.
+    pub place: Origin,
+}
+
+/// A row that could not be used.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct LostRow {
+    /// Worker as written.
+    pub worker: String,
+    /// First and last date that the row names, if they can be read.
+    pub dates: Option<(NaiveDate, NaiveDate)>,
+}
+
+/// What one table holds.
+#[derive(Debug, Clone, PartialEq, Default)]
+pub struct Rows {
+    /// Shifts.
+    pub shifts: Vec<RowShift>,
+    /// Rows that could not be used.
+    pub lost: Vec<LostRow>,
+}
+
+/// Reads a long table.
+pub fn read(
+    table: &Table,
+    file: FileId,
+    reading: &Reading,
+    diagnostics: &mut Vec<Diagnostic>,
+) -> Rows {
+    let mut rows = Rows::default();
+    let Some(columns) = Columns::find(table, reading, diagnostics) else {
+        return rows;
+    };
+    for row in &table.rows {
+        let mut reader = RowReader {
+            table,
+            columns: &columns,
+            row,
+            reading,
+            diagnostics,
+        };
+        match reader.shift(file) {
+            Some(shift) => rows.shifts.push(shift),
+            None => rows.lost.extend(reader.lost()),
+        }
+    }
+    note_formula_text(table, diagnostics);
+    rows
+}
+
+fn note_formula_text(table: &Table, diagnostics: &mut Vec<Diagnostic>) {
+    let cells: Vec<(&Row, usize)> = table
+        .rows
+        .iter()
+        .flat_map(|row| (0..row.cells.len()).map(move |place| (row, place)))
+        .filter(|(row, place)| {
+            let text = &row.cells[*place];
+            text.starts_with(['=', '+', '-', '@']) && text.parse::<f64>().is_err()
+        })
+        .collect();
+    if let Some((row, place)) = cells.first() {
+        diagnostics.push(Diagnostic::new(
+            Code::FormulaText,
+            table.origin(row, *place),
+            format!(
+                "{} cells begin with a formula sign; they are text here and are quoted on output",
+                cells.len()
+            ),
+        ));
+    }
+}
+
+/// Reads one row; every problem of the row is told.
+struct RowReader<'a> {
+    table: &'a Table,
+    columns: &'a Columns,
+    row: &'a Row,
+    reading: &'a Reading,
+    diagnostics: &'a mut Vec<Diagnostic>,
+}
+
+impl RowReader<'_> {
+    fn shift(&mut self, file: FileId) -> Option<RowShift> {
+        let counted = self.field_count();
+        let worker = self.worker();
+        let zone = self.zone();
+        let kind = self.kind();
+        let break_min = self.minutes(Column::Break);
+        let commute_min = self.minutes(Column::Commute);
+        let (start, end) = self.times(zone?)?;
+        let (start_at, end_at) = (start.at, end.at);
+        let break_min = self.checked_break(break_min?, end_at - start_at)?;
+        self.tell_length(start_at, end_at, zone?)?;
+        let text = |column| {
+            self.columns
+                .cell(self.row, column)
+                .map(|(t, _)| t.to_owned())
+        };
+        counted.then_some(())?;
+        Some(RowShift {
+            worker: worker?,
+            team: text(Column::Team),
+            start: start_at,
+            end: end_at,
+            zone: zone?,
+            kind: kind?,
+            code: text(Column::Code),
+            break_min,
+            commute_min: commute_min?,
+            origin: OriginId {
+                file,
+                row: self.row.number(),
+            },
+            place: self.table.origin(self.row, start.column),
+        })
+    }
+
+    /// What is known of a row that is not used.
+    fn lost(&self) -> Option<LostRow> {
+        let (worker, _) = self.columns.cell(self.row, Column::Worker)?;
+        let dates: Vec<NaiveDate> = [Column::Date, Column::Start, Column::End]
+            .into_iter()
+            .filter_map(|column| self.columns.cell(self.row, column))
+            .filter_map(|(text, _)| clock_text::date(text.get(..10).unwrap_or(text)))
+            .collect();
+        let first = dates.iter().min().copied();
+        let last = dates.iter().max().copied();
+        Some(LostRow {
+            worker: worker.to_owned(),
+            // A night that begins on the date reaches into the next one.
+            dates: first
+                .zip(last)
+                .map(|(first, last)| (first, last.succ_opt().unwrap_or(last))),
+        })
+    }
+
+    fn tell(&mut self, code: Code, column: usize, message: impl Into<String>) {
+        let origin = self.table.origin(self.row, column);
+        self.diagnostics
+            .push(Diagnostic::new(code, origin, message));
+    }
+
+    fn field_count(&mut self) -> bool {
+        let (found, expected) = (self.row.cells.len(), self.table.header.cells.len());
+        if found == expected {
+            return true;
+        }
+        self.tell(
+            Code::RaggedRow,
+            found.min(expected).max(1) - 1,
+            format!("row has {found} fields, the header has {expected}; row not used; quote text that holds the delimiter"),
+        );
+        false
+    }
+
+    fn worker(&mut self) -> Option<String> {
+        let Some((name, _)) = self.columns.cell(self.row, Column::Worker) else {
+            let place = self.columns.place(Column::Worker).unwrap_or(0);
+            self.tell(
+                Code::MissingWorker,
+                place,
+                "shift without a worker; row not used",
+            );
+            return None;
+        };
+        Some(name.to_owned())
+    }
+
+    fn zone(&mut self) -> Option<Tz> {
+        let Some((name, place)) = self.columns.cell(self.row, Column::Zone) else {
+            if self.reading.zone.is_none() {
+                let place = self.columns.place(Column::Zone).unwrap_or(0);
+                self.tell(
+                    Code::NoZone,
+                    place,
+                    "the row has no time zone and none was given by --zone; row not used",
+                );
+            }
+            return self.reading.zone;
+        };
+        match zone_named(name) {
+            Ok(zone) => Some(zone),
+            Err(advice) => {
+                let message = format!("{advice}; row not used");
+                self.tell(Code::UnknownZone, place, message);
+                None
+            }
+        }
+    }
+
+    fn kind(&mut self) -> Option<DutyKind> {
+        let Some((word, place)) = self.columns.cell(self.row, Column::Kind) else {
+            return Some(DutyKind::Work);
+        };
+        let kind = DutyKind::named(word);
+        if kind.is_none() {
+            let known: Vec<_> = DutyKind::words().collect();
+            self.tell(
+                Code::UnknownKind,
+                place,
+                format!(
+                    "kind {:?} is not known; expected one of {}; row not used",
+                    short(word),
+                    known.join(", ")
+                ),
+            );
+        }
+        kind
+    }
+
+    /// A number of minutes; the outer `None` is an error, the inner one a blank.
+    #[expect(
+        clippy::option_option,
+        reason = "a blank cell and a wrong one are different answers"
+    )]
+    fn minutes(&mut self, column: Column) -> Option<Option<u16>> {
+        let Some((text, place)) = self.columns.cell(self.row, column) else {
+            return Some(None);
+        };
+        let minutes = text.parse::<u16>().ok();
+        if minutes.is_none() {
+            let text = short(text);
+            let message = format!("{text:?} is no whole number of minutes; row not used");
+            self.tell(Code::BadBreak, place, message);
+        }
+        minutes.map(Some)
+    }
+
+    #[expect(
+        clippy::option_option,
+        reason = "a blank cell and a wrong one are different answers"
+    )]
+    fn checked_break(&mut self, break_min: Option<u16>, length: Duration) -> Option<Option<u16>> {
+        match break_min {
+            Some(minutes) if i64::from(minutes) >= length.num_minutes() => {
+                let place = self.columns.place(Column::Break).unwrap_or(0);
+                self.tell(
+                    Code::BadBreak,
+                    place,
+                    format!(
+                        "break of {minutes} min in a shift of {} min; row not used",
+                        length.num_minutes()
+                    ),
+                );
+                None
+            }
+            other => Some(other),
+        }
+    }
+
+    /// Start and end as instants.
+    fn times(&mut self, zone: Tz) -> Option<(Edge, Edge)> {
+        let day = self.day();
+        let start = self.moment(Column::Start, day);
+        let end = self.moment(Column::End, day);
+        let (start, end) = (start?, end?);
+        let start_at = self.instant(&start, zone);
+        let end_at = self.instant(&end, zone);
+        let (start_at, mut end_at) = (start_at?, end_at?);
+        if day.flatten_day().is_some() {
+            end_at = self.next_day_if_before(&end, start_at, end_at, zone)?;
+        }
+        let written = |moment: &Written| self.row.cells[moment.column].clone();
+        if end_at == start_at {
+            let message = format!(
+                "start equals end ({}): 0 h and 24 h cannot be told apart; row not used; write 24:00 or give two dates",
+                short(&written(&start))
+            );
+            self.tell(Code::StartEqualsEnd, end.column, message);
+            return None;
+        }
+        if end_at < start_at {
+            let message = format!(
+                "end {} lies before start {}; row not used",
+                short(&written(&end)),
+                short(&written(&start))
+            );
+            self.tell(Code::EndBeforeStartDated, end.column, message);
+            return None;
+        }
+        Some((
+            Edge {
+                at: start_at,
+                column: start.column,
+            },
+            Edge {
+                at: end_at,
+                column: end.column,
+            },
+        ))
+    }
+
+    /// The date of a `date` column: absent, wrong, or read.
+    fn day(&mut self) -> Day {
+        let Some((text, place)) = self.columns.cell(self.row, Column::Date) else {
+            return Day::Absent;
+        };
+        if let Some(date) = clock_text::date(text) {
+            return Day::Read(date);
+        }
+        let message = unreadable_date(text);
+        self.tell(Code::UnreadableDate, place, message);
+        Day::Wrong
+    }
+
+    fn moment(&mut self, column: Column, day: Day) -> Option<Written> {
+        let Some((text, place)) = self.columns.cell(self.row, column) else {
+            let place = self.columns.place(column).unwrap_or(0);
+            self.tell(
+                Code::UnreadableTime,
+                place,
+                "the cell is blank; row not used",
+            );
+            return None;
+        };
+        let read = match day {
+            Day::Absent => clock_text::moment(text),
+            Day::Read(date) => clock_text::time(text)
+                .map(|time| Moment::Local(date, time))
+                .or_else(|| clock_text::moment(text)),
+            Day::Wrong => return None,
+        };
+        if read.is_none() {
+            let (code, message) = unreadable_moment(text, day);
+            self.tell(code, place, message);
+        }
+        read.map(|moment| Written {
+            moment,
+            column: place,
+        })
+    }
+
+    fn instant(&mut self, written: &Written, zone: Tz) -> Option<DateTime<Utc>> {
+        match written.moment {
+            Moment::Fixed(at) => Some(at.with_timezone(&Utc)),
+            Moment::Local(date, time) => {
+                if time == DayTime::EndOfDay {
+                    self.tell(
+                        Code::MidnightAsTwentyFour,
+                        written.column,
+                        format!("24:00 read as 00:00 of the day after {date}"),
+                    );
+                }
+                let local = clock_text::local(date, time)?;
+                self.local_instant(local, written.column, zone)
+            }
+        }
+    }
+
+    fn local_instant(
+        &mut self,
+        local: NaiveDateTime,
+        column: usize,
+        zone: Tz,
+    ) -> Option<DateTime<Utc>> {
+        let at = crate::timeline::civil::instant_of(zone, local);
+        match zone.from_local_datetime(&local) {
+            chrono::MappedLocalTime::Single(_) => {}
+            chrono::MappedLocalTime::Ambiguous(first, second) => self.tell(
+                Code::ClockFold,
+                column,
+                format!(
+                    "{local} occurs twice in {zone}; the first ({}) is used, the second would be {}",
+                    zulu(first.with_timezone(&Utc)),
+                    zulu(second.with_timezone(&Utc))
+                ),
+            ),
+            chrono::MappedLocalTime::None if date_is_skipped(zone, local.date()) => {
+                self.tell(
+                    Code::SkippedDate,
+                    column,
+                    format!("{} did not exist in {zone}; row not used", local.date()),
+                );
+                return None;
+            }
+            chrono::MappedLocalTime::None => self.tell(
+                Code::ClockGap,
+                column,
+                format!(
+                    "{local} does not exist in {zone}; read as {} ({})",
+                    at.with_timezone(&zone).format("%H:%M %Z"),
+                    zulu(at)
+                ),
+            ),
+        }
+        Some(at)
+    }
+
+    /// With one date for both times, an end before the start is on the next day.
+    fn next_day_if_before(
+        &mut self,
+        end: &Written,
+        start_at: DateTime<Utc>,
+        end_at: DateTime<Utc>,
+        zone: Tz,
+    ) -> Option<DateTime<Utc>> {
+        let Moment::Local(date, time) = end.moment else {
+            return Some(end_at);
+        };
+        if end_at >= start_at {
+            return Some(end_at);
+        }
+        let local = clock_text::local(date.succ_opt()?, time)?;
+        let moved = self.local_instant(local, end.column, zone)?;
+        let hours = (moved - start_at).num_minutes();
+        let text = format!(
+            "end before start; read as next day ({} h {:02})",
+            hours / 60,
+            hours % 60
+        );
+        let origin = self.table.origin(self.row, end.column);
+        let level = if hours > 14 * 60 {
+            Level::Warning
+        } else {
+            Level::Note
+        };
+        self.diagnostics
+            .push(Diagnostic::new(Code::EndBeforeStart, origin, text).at(level));
+        Some(moved)
+    }
+
+    /// Length checks; `None` when the row is not used.
+    fn tell_length(&mut self, start: DateTime<Utc>, end: DateTime<Utc>, zone: Tz) -> Option<()> {
+        let minutes = (end - start).num_minutes();
+        let place = self.columns.place(Column::End).unwrap_or(0);
+        let length = format!("{} h {:02}", minutes / 60, minutes % 60);
+        if minutes > 36 * 60 {
+            let origin = self.table.origin(self.row, place);
+            let text = format!(
+                "shift lasts {length}, above the limit of 36 h; row not used; check the dates"
+            );
+            self.diagnostics
+                .push(Diagnostic::new(Code::LongShift, origin, text).at(Level::Error));
+            return None;
+        }
+        if minutes > 16 * 60 {
+            self.tell(
+                Code::LongShift,
+                place,
+                format!("shift lasts {length}; used; check the dates and am/pm"),
+            );
+        }
+        if minutes < 15 {
+            self.tell(
+                Code::ShortShift,
+                place,
+                format!("shift lasts only {minutes} min; used"),
+            );
+        }
+        let offset = |at: DateTime<Utc>| {
+            zone.offset_from_utc_datetime(&at.naive_utc())
+                .fix()
+                .local_minus_utc()
+        };
+        if offset(start) != offset(end) {
+            self.tell(
+                Code::CrossesClockChange,
+                place,
+                format!("{length} elapsed over a clock change"),
+            );
+        }
+        Some(())
+    }
+}
+
+/// A date-time and the column it was written in.
+#[derive(Debug, Clone, Copy)]
+struct Written {
+    moment: Moment,
+    column: usize,
+}
+
+/// One end of a shift.
+#[derive(Debug, Clone, Copy)]
+struct Edge {
+    at: DateTime<Utc>,
+    column: usize,
+}
+
+/// What the `date` column says.
+#[derive(Debug, Clone, Copy)]
+enum Day {
+    Absent,
+    Wrong,
+    Read(NaiveDate),
+}
+
+impl Day {
+    fn flatten_day(self) -> Option<NaiveDate> {
+        match self {
+            Self::Read(date) => Some(date),
+            Self::Absent | Self::Wrong => None,
+        }
+    }
+}
+
+fn date_is_skipped(zone: Tz, date: NaiveDate) -> bool {
+    let noon = date.and_time(NaiveTime::from_hms_opt(12, 0, 0).unwrap_or(NaiveTime::MIN));
+    matches!(
+        zone.from_local_datetime(&noon),
+        chrono::MappedLocalTime::None
+    )
+}
+
+fn zulu(at: DateTime<Utc>) -> String {
+    at.format("%H:%MZ").to_string()
+}
+
+fn unreadable_date(text: &str) -> String {
+    format!(
+        "{:?} is no date that can be read; expected year-month-day such as 2026-03-09; row not used",
+        short(text)
+    )
+}
+
+fn unreadable_moment(text: &str, day: Day) -> (Code, String) {
+    let date_part = text.split(['T', ' ']).next().unwrap_or(text);
+    match day {
+        Day::Absent if clock_text::date(date_part).is_none() => {
+            (Code::UnreadableDate, unreadable_date(text))
+        }
+        Day::Absent => (
+            Code::UnreadableTime,
+            format!(
+                "{:?} is no date and time that can be read; expected such as 2026-03-09T22:00; row not used",
+                short(text)
+            ),
+        ),
+        Day::Read(_) | Day::Wrong => (
+            Code::UnreadableTime,
+            format!(
+                "{:?} is no time of day that can be read; expected such as 22:00; row not used",
+                short(text)
+            ),
+        ),
+    }
+}

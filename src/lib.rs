@@ -1,0 +1,161 @@
+//! `acroshift` reads work rosters, estimates each duty line's sleep, circadian phase and cortisol rhythm with published models,
+//! finds recovery windows that are compressed, holds the roster against working-time law and advice, and reports with sources and bands.
+//!
+//! The modules stand in the order in which the data flow:
+//!
+//! ```text
+//! bytes -> intake -> Roster -> timeline -> physiology -> assessment -> report -> render -> bytes
+//! ```
+//!
+//! Each stage takes the value of the former one and returns a new one; nothing is changed upstream.
+//! [`screen`] puts the stages together.
+//! The library never reads the clock, the environment or the network, and never prints.
+
+pub mod units;
+
+pub mod numeric;
+
+pub mod source;
+
+pub mod diagnostic;
+
+pub mod roster;
+
+pub mod intake;
+
+pub mod timeline;
+
+pub mod physiology;
+
+pub mod assessment;
+
+pub mod report;
+
+pub mod render;
+
+use assessment::{AssessmentInput, Criteria, Pack};
+use intake::site::Site;
+use physiology::{ModelSets, Sampling};
+use report::{Audience, ReportInput, RunFacts, ScreenReport};
+use roster::Roster;
+use timeline::{Axis, HabitFile, SiteScene, Timeline};
+use units::Lux;
+
+/// How a roster is screened.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Screening {
+    /// For whom the report is.
+    pub audience: Audience,
+    /// Rule packs.
+    pub packs: Vec<Pack>,
+    /// What the workplace adds.
+    pub site: Site,
+    /// Members of the ensemble; rounded up to a multiple of 8.
+    pub members: usize,
+    /// Seed of the ensemble.
+    pub seed: u64,
+}
+
+/// Names and SHA-256 of the input files, in the order in which they were read.
+pub type InputHashes = [(String, String)];
+
+/// From a roster to a report: timelines, physiology, assessment, document.
+///
+/// Returns `None` for a roster without shifts.
+///
+/// # Example
+///
+/// ```
+/// use acroshift::{Screening, assessment::pack, intake, report::Audience, screen};
+///
+/// let csv = b"worker,start,end\nA1,2026-03-09T14:00,2026-03-09T22:00\nA1,2026-03-10T06:00,2026-03-10T14:00\n";
+/// let reading = intake::Reading { zone: Some(chrono_tz::Europe::London), ..intake::Reading::default() };
+/// let read = intake::read(&[intake::Input { name: "two.csv", bytes: csv }], &reading);
+/// let screening = Screening {
+///     audience: Audience::Planner,
+///     packs: pack::named(&pack::DEFAULT_PACKS)?,
+///     site: intake::site::Site::default(),
+///     members: 8,
+///     seed: 1,
+/// };
+/// let roster = read.roster.expect("the file is in order");
+/// let report = screen(&roster, &read.diagnostics, &[], &screening).expect("there are shifts");
+/// // Eight hours between a late and an early shift: one compressed window.
+/// assert_eq!(report.summary.compressed, 1);
+/// # Ok::<(), acroshift::assessment::pack::UnknownPack>(())
+/// ```
+pub fn screen(
+    roster: &Roster,
+    diagnostics: &[diagnostic::Diagnostic],
+    inputs: &InputHashes,
+    screening: &Screening,
+) -> Option<ScreenReport> {
+    let habit_file = HabitFile::embedded();
+    let sets = ModelSets::embedded();
+    let criteria = Criteria::embedded();
+
+    // Civil time becomes elapsed time.
+    let scene = SiteScene {
+        work_light: work_light(screening.site.task_light, &sets),
+        habits: habit_file.habits(),
+    };
+    let axis = Axis::of(roster, &scene.habits)?;
+    let lines = roster::lines(roster, scene.habits.join_gap_min);
+    let timelines: Vec<Timeline> = lines
+        .iter()
+        .map(|line| timeline::timeline(roster, line.workers[0], &axis, &scene))
+        .collect();
+
+    // Each line is lived by the same ensemble.
+    let sampling = Sampling {
+        members: screening.members,
+        seed: screening.seed,
+        commute_min: screening
+            .site
+            .commute_min
+            .unwrap_or(scene.habits.commute_h * 60.0),
+        morning_daylight: screening.site.morning_daylight,
+    };
+    let members = physiology::members(&sets.ensemble, sampling);
+    let simulations = physiology::simulate(&timelines, &members, &sets);
+
+    // Law, advice and model are held against the windows, side by side.
+    let assessment = assessment::assess(&AssessmentInput {
+        roster,
+        axis: &axis,
+        habits: &scene.habits,
+        lines: &lines,
+        simulations: &simulations,
+        packs: &screening.packs,
+        criteria: &criteria,
+        declared: &screening.site.derogations,
+    });
+
+    // One document, whatever the format.
+    Some(report::build(&ReportInput {
+        audience: screening.audience,
+        roster,
+        axis: &axis,
+        simulations: &simulations,
+        assessment: &assessment,
+        packs: &screening.packs,
+        criteria: &criteria,
+        sets: &sets,
+        habits: &habit_file,
+        diagnostics,
+        inputs,
+        run: &RunFacts {
+            version: env!("CARGO_PKG_VERSION").to_owned(),
+            tzdb: chrono_tz::IANA_TZDB_VERSION.to_owned(),
+            members: members.len(),
+            seed: screening.seed,
+            morning_daylight: screening.site.morning_daylight,
+        },
+    }))
+}
+
+/// Light at the eye on duty from the light on the task.
+fn work_light(task_light: Option<Lux>, sets: &ModelSets) -> Option<Lux> {
+    let at_eye = task_light?.get() * sets.light.eye.factor.value;
+    Lux::new(at_eye).ok()
+}

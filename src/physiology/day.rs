@@ -1,0 +1,96 @@
+//! Cortisol of one member over one local date.
+
+use crate::numeric::cosine::fit_cosine;
+use crate::units::Minute;
+
+/// Features of the modelled total serum cortisol of one stretch of time.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct CortisolDay {
+    /// Mean, nmol/L.
+    pub mean: f64,
+    /// MESOR of the 24-h cosine, nmol/L.
+    pub mesor: f64,
+    /// Amplitude of the 24-h cosine, nmol/L.
+    pub amplitude: f64,
+    /// Acrophase of the 24-h cosine, minutes after the first minute of the stretch. Depends on sleep timing; no phase marker in shift work.
+    pub acrophase_min: f64,
+    /// Highest value, nmol/L.
+    pub peak: f64,
+    /// When.
+    pub peak_at: Minute,
+    /// Lowest value, nmol/L.
+    pub nadir: f64,
+    /// When.
+    pub nadir_at: Minute,
+    /// Unbroken interval around the nadir below the share of the mean: first minute below, first minute above.
+    pub quiescent: (Minute, Minute),
+}
+
+/// One lane of a run, minute by minute.
+#[derive(Debug, Clone, Copy)]
+pub struct CortisolSeries<'a> {
+    /// Minute of the first value.
+    pub from: Minute,
+    /// Values, nmol/L.
+    pub values: &'a [f64],
+}
+
+/// Features of [from, to).
+///
+/// The quiescent interval may reach beyond the stretch on either side.
+/// Returns `None` when the stretch does not lie inside the series.
+///
+/// # Source
+///
+/// Quiescence: own definition after the idea of Griefahn 2006, below 60 % of the mean.
+pub fn cortisol_day(
+    series: CortisolSeries<'_>,
+    (from, to): (Minute, Minute),
+    share_of_mean: f64,
+) -> Option<CortisolDay> {
+    let first = usize::try_from(from - series.from).ok()?;
+    let last = usize::try_from(to - series.from).ok()?;
+    let values = series.values.get(first..last)?;
+    let hours: Vec<f64> = (0..values.len()).map(minute_as_hours).collect();
+    let fit = fit_cosine(&hours, values, 24.0)?;
+    let mean = values.iter().sum::<f64>() / Minute(signed(values.len())).as_f64();
+    let (peak_index, peak) = extreme(values, |a, b| a > b)?;
+    let (nadir_index, nadir) = extreme(values, |a, b| a < b)?;
+    let threshold = share_of_mean * mean;
+    let (mut begins, mut ends) = (first + nadir_index, first + nadir_index);
+    while begins > 0 && series.values[begins - 1] < threshold {
+        begins -= 1;
+    }
+    while ends < series.values.len() && series.values[ends] < threshold {
+        ends += 1;
+    }
+    Some(CortisolDay {
+        mean,
+        mesor: fit.mesor,
+        amplitude: fit.amplitude,
+        acrophase_min: fit.acrophase * 60.0,
+        peak,
+        peak_at: from + signed(peak_index),
+        nadir,
+        nadir_at: from + signed(nadir_index),
+        quiescent: (series.from + signed(begins), series.from + signed(ends)),
+    })
+}
+
+fn extreme(values: &[f64], better: impl Fn(f64, f64) -> bool) -> Option<(usize, f64)> {
+    let mut best = (0, *values.first()?);
+    for (index, &value) in values.iter().enumerate() {
+        if better(value, best.1) {
+            best = (index, value);
+        }
+    }
+    Some(best)
+}
+
+fn minute_as_hours(index: usize) -> f64 {
+    Minute(signed(index)).as_f64() / 60.0
+}
+
+fn signed(index: usize) -> i64 {
+    i64::try_from(index).unwrap_or(i64::MAX)
+}

@@ -1,0 +1,193 @@
+//! What one member lived through: sleep and `CBTmin`, including remembered habitual days before the roster.
+
+use super::ensemble::Member;
+use crate::units::{Minute, minutes_to_hours};
+
+/// One sleep.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub struct SleepEpisode {
+    /// First minute asleep.
+    pub from: Minute,
+    /// First minute awake.
+    pub to: Minute,
+    /// Cut by the end of the simulated time: not a waking.
+    pub cut: bool,
+}
+
+impl SleepEpisode {
+    /// Minutes of this sleep inside [from, to).
+    pub fn inside(&self, from: Minute, to: Minute) -> i64 {
+        (self.to.min(to) - self.from.max(from)).max(0)
+    }
+
+    /// Length, hours.
+    pub fn hours(&self) -> f64 {
+        self.to.hours_since(self.from)
+    }
+
+    /// Middle, decimal minutes.
+    pub fn middle_min(&self) -> f64 {
+        f64::midpoint(self.from.as_f64(), self.to.as_f64())
+    }
+}
+
+/// One member's sleep and phase, ascending in time.
+#[derive(Debug, Clone, PartialEq)]
+pub struct MemberTrack {
+    /// Who.
+    pub member: Member,
+    /// Sleeps.
+    pub sleeps: Vec<SleepEpisode>,
+    /// `CBTmin`, minutes since the epoch.
+    pub cbtmin_min: Vec<f64>,
+    /// `CBTmin` on habitual days, minutes since the epoch (of the day before the roster).
+    pub habitual_cbtmin_min: f64,
+}
+
+impl MemberTrack {
+    /// A track that holds only remembered habitual days, up to noon of the day before the roster.
+    pub fn habitual(member: Member, cbtmin_min: f64, days: i64) -> Self {
+        let sleeps = (0..days)
+            .rev()
+            .map(|back| {
+                let bed = Minute(-1440 * (back + 1)).as_f64() + member.bed_h * 60.0 - 1440.0;
+                SleepEpisode {
+                    from: whole(bed),
+                    to: whole(bed + member.need_h * 60.0),
+                    cut: false,
+                }
+            })
+            .collect();
+        let cbtmins = (0..=days)
+            .rev()
+            .map(|back| cbtmin_min - 1440.0 * Minute(back).as_f64())
+            .collect();
+        Self {
+            member,
+            sleeps,
+            cbtmin_min: cbtmins,
+            habitual_cbtmin_min: cbtmin_min,
+        }
+    }
+
+    /// Hours asleep inside [from, to).
+    pub fn sleep_h(&self, from: Minute, to: Minute) -> f64 {
+        minutes_to_hours(self.sleeps.iter().map(|s| s.inside(from, to)).sum())
+    }
+
+    /// Hours awake up to `at`, since the last waking; 0 when asleep.
+    pub fn awake_h(&self, at: Minute) -> f64 {
+        match self.sleeps.iter().rev().find(|sleep| sleep.from < at) {
+            Some(sleep) if sleep.to >= at => 0.0,
+            Some(sleep) => at.hours_since(sleep.to),
+            None => 0.0,
+        }
+    }
+
+    /// The longest sleep that overlaps [from, to), the later one when equal.
+    pub fn main_sleep(&self, from: Minute, to: Minute) -> Option<&SleepEpisode> {
+        self.sleeps
+            .iter()
+            .filter(|sleep| sleep.inside(from, to) > 0)
+            .max_by_key(|sleep| (sleep.inside(from, to), sleep.from))
+    }
+
+    /// The last `CBTmin` at or before `at`.
+    pub fn cbtmin_before(&self, at: Minute) -> f64 {
+        let index = self
+            .cbtmin_min
+            .partition_point(|cbtmin| *cbtmin <= at.as_f64());
+        self.cbtmin_min[index.max(1) - 1]
+    }
+
+    /// The `CBTmin` nearest to `at_min`.
+    pub fn cbtmin_nearest(&self, at_min: f64) -> f64 {
+        let index = self.cbtmin_min.partition_point(|cbtmin| *cbtmin <= at_min);
+        let before = self.cbtmin_min[index.max(1) - 1];
+        match self.cbtmin_min.get(index) {
+            Some(&after) if after - at_min < at_min - before => after,
+            _ => before,
+        }
+    }
+
+    /// Hours by which `cbtmin_min` stands earlier (positive) or later (negative) than on habitual days, in (-12, 12].
+    pub fn earlier_h(&self, cbtmin_min: f64) -> f64 {
+        crate::numeric::circular::wrap_half(self.habitual_cbtmin_min - cbtmin_min, 1440.0) / 60.0
+    }
+
+    /// Sleep midpoint minus nearest `CBTmin`, hours in (-12, 12]; positive is sleep after `CBTmin`.
+    pub fn phase_angle_h(&self, sleep: &SleepEpisode) -> f64 {
+        let middle = sleep.middle_min();
+        crate::numeric::circular::wrap_half(middle - self.cbtmin_nearest(middle), 1440.0) / 60.0
+    }
+
+    /// The phase angle of habitual sleep, hours.
+    pub fn habitual_phase_angle_h(&self) -> f64 {
+        let middle = (self.member.bed_h + self.member.need_h / 2.0) * 60.0;
+        crate::numeric::circular::wrap_half(middle - self.habitual_cbtmin_min, 1440.0) / 60.0
+    }
+
+    /// Continuous phase at `minute`: minutes since `CBTmin`, in [0, 1440), stretched evenly between neighbouring `CBTmin`s.
+    pub fn phase_min(&self, minute: f64) -> f64 {
+        let index = self
+            .cbtmin_min
+            .partition_point(|cbtmin| *cbtmin <= minute)
+            .max(1);
+        let before = self.cbtmin_min[index - 1];
+        let since = minute - before;
+        let phase = match self.cbtmin_min.get(index) {
+            Some(after) => {
+                let cycles = ((after - before) / 1440.0).round().max(1.0);
+                since / (after - before) * 1440.0 * cycles
+            }
+            None => since,
+        };
+        crate::numeric::circular::wrap(phase, 1440.0)
+    }
+}
+
+#[expect(
+    clippy::cast_possible_truncation,
+    reason = "minutes of a roster fit an i64 by far"
+)]
+fn whole(minutes: f64) -> Minute {
+    Minute((minutes - 1e-6).ceil() as i64)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::physiology::ModelSets;
+
+    fn track() -> MemberTrack {
+        let member = Member::mean(&ModelSets::embedded().ensemble, 30.0);
+        MemberTrack::habitual(member, -1440.0 + 210.0, 3)
+    }
+
+    #[test]
+    fn remembered_nights_end_before_the_entry() {
+        let track = track();
+        let last = track.sleeps.last().unwrap();
+        assert_eq!((last.from, last.to), (Minute(-1500), Minute(-1020)));
+        assert_eq!(track.sleeps.len(), 3);
+    }
+
+    #[test]
+    fn habitual_phase_angle_is_mid_sleep_minus_cbtmin() {
+        // Mid-sleep 03:00, CBTmin 03:30: sleep lies half an hour before CBTmin.
+        assert!((track().habitual_phase_angle_h() - -0.5).abs() < 1e-9);
+    }
+
+    #[test]
+    fn a_later_clock_has_a_negative_displacement() {
+        let track = track();
+        assert!((track.earlier_h(210.0 + 90.0) - -1.5).abs() < 1e-9);
+    }
+
+    #[test]
+    fn hours_awake_count_from_the_last_waking() {
+        let track = track();
+        assert!((track.awake_h(Minute(-720)) - 5.0).abs() < 1e-9);
+        assert!(track.awake_h(Minute(-1100)).abs() < 1e-9);
+    }
+}

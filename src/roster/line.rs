@@ -1,0 +1,47 @@
+//! Duty lines: workers with identical duties share one.
+
+use super::{Roster, WorkerId};
+use chrono::{DateTime, Utc};
+use std::collections::BTreeMap;
+
+/// A duty line; printed as `line 7`.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
+pub struct LineId(pub u32);
+
+impl std::fmt::Display for LineId {
+    fn fmt(&self, formatter: &mut std::fmt::Formatter<'_>) -> std::fmt::Result {
+        write!(formatter, "line {}", self.0)
+    }
+}
+
+/// One line and who works it.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct DutyLine {
+    /// Its number, from 1, in order of the first duty and then of all later ones.
+    pub id: LineId,
+    /// Workers on it, in order of name.
+    pub workers: Vec<WorkerId>,
+}
+
+/// What makes a duty of one line the same as that of another: times, and the commute where the roster names it.
+type DutyKey = (DateTime<Utc>, DateTime<Utc>, Option<u16>);
+
+/// Groups workers by their counted duties. The order of rows in the file does not matter.
+pub fn lines(roster: &Roster, join_gap_min: i64) -> Vec<DutyLine> {
+    let mut groups: BTreeMap<Vec<DutyKey>, Vec<WorkerId>> = BTreeMap::new();
+    for worker in roster.worker_ids() {
+        let duties: Vec<_> = roster
+            .counted_duties(worker, join_gap_min)
+            .iter()
+            .map(|block| (block.start, block.end, block.commute_min))
+            .collect();
+        groups.entry(duties).or_default().push(worker);
+    }
+    (1..)
+        .zip(groups.into_values())
+        .map(|(number, workers)| DutyLine {
+            id: LineId(number),
+            workers,
+        })
+        .collect()
+}

@@ -1,0 +1,180 @@
+//! When is a person on duty, and when can sleep happen? Civil time becomes elapsed time here and nowhere else.
+//!
+//! A [`Timeline`] is one duty line: duties in elapsed minutes, the local dates they span, and the clock.
+//! [`plan::segments`] lays a person with a given commute on it.
+
+pub mod civil;
+pub mod habits;
+pub mod plan;
+
+pub use civil::{CivilClock, CivilDay};
+pub use habits::{HabitFile, Habits};
+
+use crate::roster::{DutyBlock, Roster, WorkerId};
+use crate::units::{ClockHour, Lux, Minute, minutes_to_hours};
+use chrono::{DateTime, Days, NaiveDate, Utc};
+use chrono_tz::Tz;
+
+/// One counted duty on the elapsed time axis.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct DutySpan {
+    /// First minute.
+    pub start: Minute,
+    /// First minute after it.
+    pub end: Minute,
+    /// Clock hour of the start, local.
+    pub start_clock: ClockHour,
+    /// Clock hour of the end, local.
+    pub end_clock: ClockHour,
+    /// Commute of this duty from the roster, minutes each way; otherwise the member's own.
+    pub commute_min: Option<f64>,
+    /// Light at the eye on duty from the site, otherwise the default.
+    pub light: Option<Lux>,
+}
+
+/// One duty line in elapsed time.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Timeline {
+    /// Duties, ascending, disjoint.
+    pub duties: Vec<DutySpan>,
+    /// Local dates from the day before the first date to the last one, ascending.
+    pub days: Vec<CivilDay>,
+    /// Local clock against elapsed time.
+    pub clock: CivilClock,
+    /// End of the simulated time.
+    pub end: Minute,
+    /// Time around duty.
+    pub habits: Habits,
+}
+
+impl Timeline {
+    /// Is it light outdoors at `minute`?
+    pub fn daylight_at(&self, minute: Minute) -> bool {
+        let index = self.days.partition_point(|day| day.end <= minute);
+        self.days
+            .get(index)
+            .is_some_and(|day| (day.sunrise..day.sunset).contains(&minute))
+    }
+
+    /// Duties as they are known to a timeline of the same dates without any duty.
+    #[must_use]
+    pub fn without_duties(&self) -> Self {
+        Self {
+            duties: Vec::new(),
+            ..self.clone()
+        }
+    }
+}
+
+/// What the site adds to a roster.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct SiteScene {
+    /// Light at the eye on duty, where the site file gives it.
+    pub work_light: Option<Lux>,
+    /// Time around duty.
+    pub habits: Habits,
+}
+
+/// The elapsed-time axis that all workers of a roster share.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Axis {
+    /// Instant of minute 0: local midnight that begins the first date analysed.
+    pub epoch: DateTime<Utc>,
+    /// Local dates from the day before the first date to the last one.
+    pub days: Vec<CivilDay>,
+    /// Local clock against elapsed time.
+    pub clock: CivilClock,
+    /// Zone of the workplace.
+    pub zone: Tz,
+    /// Instant at which the last shift begins.
+    pub last_start: DateTime<Utc>,
+}
+
+impl Axis {
+    /// The axis of a roster: from the date of its first shift to the date on which its last shift ends.
+    ///
+    /// Returns `None` for a roster without shifts.
+    pub fn of(roster: &Roster, habits: &Habits) -> Option<Self> {
+        let first = roster.shifts.iter().map(|shift| shift.start).min()?;
+        let last = roster.shifts.iter().map(|shift| shift.end).max()?;
+        let zone = roster.zone;
+        let first_date = first.with_timezone(&zone).date_naive();
+        let last_date = last.with_timezone(&zone).date_naive();
+        let epoch = civil::midnight(zone, first_date);
+        Some(Self {
+            epoch,
+            days: civil::days(zone, epoch, first_date, last_date, habits),
+            clock: CivilClock::of(zone, epoch, last + chrono::Duration::days(3)),
+            zone,
+            last_start: roster.shifts.iter().map(|shift| shift.start).max()?,
+        })
+    }
+
+    /// Dates of the roster, from that of the first shift to that on which the last one ends.
+    pub fn dates(&self) -> &[CivilDay] {
+        // The days begin with the one before the first date.
+        self.days.get(1..).unwrap_or_default()
+    }
+
+    /// Dates on which shifts may begin: the last one is that of the last start, not of the last end.
+    pub fn rostered_dates(&self) -> &[CivilDay] {
+        let last = self.minute(self.last_start);
+        let dates = self.dates();
+        &dates[..dates.partition_point(|day| day.start <= last)]
+    }
+
+    /// Elapsed minute of an instant, cut to whole minutes.
+    pub fn minute(&self, instant: DateTime<Utc>) -> Minute {
+        Minute((instant - self.epoch).num_minutes())
+    }
+
+    /// Elapsed minute of a clock hour on a date, or on the date `days_later` after it.
+    pub fn at_clock(&self, date: NaiveDate, days_later: u64, hour: f64) -> Minute {
+        let date = date.checked_add_days(Days::new(days_later)).unwrap_or(date);
+        self.minute(civil::instant_of(
+            self.zone,
+            date.and_time(civil::time_of(hour)),
+        ))
+    }
+
+    /// Local civil time of an elapsed minute.
+    pub fn local(&self, minute: Minute) -> DateTime<Tz> {
+        self.instant(minute).with_timezone(&self.zone)
+    }
+
+    /// Instant of an elapsed minute.
+    pub fn instant(&self, minute: Minute) -> DateTime<Utc> {
+        self.epoch + chrono::Duration::minutes(minute.0)
+    }
+}
+
+/// The duty line of one worker.
+pub fn timeline(roster: &Roster, worker: WorkerId, axis: &Axis, scene: &SiteScene) -> Timeline {
+    let duties = roster
+        .counted_duties(worker, scene.habits.join_gap_min)
+        .iter()
+        .map(|block| duty_span(block, axis, scene))
+        .collect();
+    let end = axis.days.last().map_or(Minute(0), |day| day.end);
+    Timeline {
+        duties,
+        days: axis.days.clone(),
+        clock: axis.clock.clone(),
+        end,
+        habits: scene.habits,
+    }
+}
+
+fn duty_span(block: &DutyBlock, axis: &Axis, scene: &SiteScene) -> DutySpan {
+    let start = axis.minute(block.start);
+    let end = axis.minute(block.end);
+    let clock = |minute: Minute| ClockHour::wrapping(minutes_to_hours(axis.clock.at(minute)));
+    DutySpan {
+        start,
+        end,
+        start_clock: clock(start),
+        end_clock: clock(end),
+        commute_min: block.commute_min.map(f64::from),
+        light: scene.work_light,
+    }
+}

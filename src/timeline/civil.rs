@@ -1,0 +1,192 @@
+//! Local dates and the local clock on the elapsed time axis.
+
+use super::Habits;
+use crate::units::Minute;
+use chrono::{DateTime, Duration, NaiveDate, NaiveDateTime, NaiveTime, Offset, TimeZone, Utc};
+use chrono_tz::Tz;
+
+/// One local date on the elapsed time axis.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub struct CivilDay {
+    /// The date.
+    pub date: NaiveDate,
+    /// Local midnight that begins it.
+    pub start: Minute,
+    /// Local midnight that ends it: 23, 24 or 25 h later.
+    pub end: Minute,
+    /// First minute of daylight.
+    pub sunrise: Minute,
+    /// First minute after daylight.
+    pub sunset: Minute,
+}
+
+/// The local clock as steps of its offset against elapsed time.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct CivilClock {
+    /// From this minute on the clock shows elapsed minutes plus this many.
+    steps: Vec<(Minute, i64)>,
+}
+
+impl CivilClock {
+    /// A clock that never changes.
+    pub fn steady() -> Self {
+        Self {
+            steps: vec![(Minute(i64::MIN), 0)],
+        }
+    }
+
+    /// The clock of a zone between two instants; minute 0 is `epoch`, a local midnight.
+    pub fn of(zone: Tz, epoch: DateTime<Utc>, until: DateTime<Utc>) -> Self {
+        let base = offset_min(zone, epoch);
+        let mut steps = vec![(Minute(i64::MIN), 0)];
+        let mut shown = 0;
+        let last = (until - epoch).num_minutes();
+        // Zones change their offset on whole quarter hours of UTC in all rules since 1970 that rosters can meet.
+        let mut minute = -2 * 1440;
+        while minute <= last {
+            let offset = offset_min(zone, epoch + Duration::minutes(minute)) - base;
+            if offset != shown {
+                steps.push((Minute(minute), offset));
+                shown = offset;
+            }
+            minute += 15;
+        }
+        Self { steps }
+    }
+
+    /// Minutes shown by the clock at `minute`, counted from the epoch's midnight.
+    pub fn at(&self, minute: Minute) -> i64 {
+        let index = self.steps.partition_point(|(from, _)| *from <= minute);
+        minute.0 + self.steps[index.max(1) - 1].1
+    }
+
+    /// Does the clock change between the two minutes?
+    pub fn changes_between(&self, from: Minute, to: Minute) -> bool {
+        self.steps
+            .iter()
+            .skip(1)
+            .any(|(at, _)| from < *at && *at <= to)
+    }
+}
+
+fn offset_min(zone: Tz, instant: DateTime<Utc>) -> i64 {
+    let offset = zone.offset_from_utc_datetime(&instant.naive_utc()).fix();
+    i64::from(offset.local_minus_utc()) / 60
+}
+
+/// Instant at which a local date begins; where midnight is skipped, the first instant after it.
+pub fn midnight(zone: Tz, date: NaiveDate) -> DateTime<Utc> {
+    instant_of(zone, date.and_time(NaiveTime::MIN))
+}
+
+/// Instant of a local time: the first of two readings; a skipped time is read with the offset before the gap (RFC 5545, 3.3.5).
+pub fn instant_of(zone: Tz, local: NaiveDateTime) -> DateTime<Utc> {
+    if let Some(instant) = zone.from_local_datetime(&local).earliest() {
+        instant.with_timezone(&Utc)
+    } else {
+        let before = offset_before_gap(zone, local);
+        DateTime::from_naive_utc_and_offset(local - before, Utc)
+    }
+}
+
+/// Offset in force just before a local time that was skipped.
+fn offset_before_gap(zone: Tz, local: NaiveDateTime) -> Duration {
+    // The longest gaps are a whole date (Apia 2011); an hour at a time finds the last local time before the gap.
+    for hours in 1..=26 {
+        if let Some(before) = zone
+            .from_local_datetime(&(local - Duration::hours(hours)))
+            .latest()
+        {
+            return Duration::seconds(i64::from(before.offset().fix().local_minus_utc()));
+        }
+    }
+    Duration::zero()
+}
+
+/// Local dates from the day before `first` to `last`, on the axis that begins at `epoch`.
+pub fn days(
+    zone: Tz,
+    epoch: DateTime<Utc>,
+    first: NaiveDate,
+    last: NaiveDate,
+    habits: &Habits,
+) -> Vec<CivilDay> {
+    let minute = |instant: DateTime<Utc>| Minute((instant - epoch).num_minutes());
+    let before = first.pred_opt().unwrap_or(first);
+    before
+        .iter_days()
+        .take_while(|date| *date <= last)
+        .map(|date| {
+            let next = date.succ_opt().unwrap_or(date);
+            let at = |hour: f64| minute(instant_of(zone, date.and_time(time_of(hour))));
+            CivilDay {
+                date,
+                start: minute(midnight(zone, date)),
+                end: minute(midnight(zone, next)),
+                sunrise: at(habits.sunrise_h),
+                sunset: at(habits.sunset_h),
+            }
+        })
+        .filter(|day| day.start < day.end)
+        .collect()
+}
+
+#[expect(
+    clippy::cast_possible_truncation,
+    clippy::cast_sign_loss,
+    reason = "a clock hour has at most 86 400 s"
+)]
+pub(super) fn time_of(hour: f64) -> NaiveTime {
+    let seconds = (hour * 3600.0).round().clamp(0.0, 86_399.0) as u32;
+    NaiveTime::from_num_seconds_from_midnight_opt(seconds, 0).unwrap_or(NaiveTime::MIN)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::timeline::HabitFile;
+
+    fn date(text: &str) -> NaiveDate {
+        text.parse().unwrap()
+    }
+
+    #[test]
+    fn the_day_of_the_spring_change_has_23_hours() {
+        let zone = chrono_tz::Europe::London;
+        let first = date("2026-03-28");
+        let epoch = midnight(zone, first);
+        let habits = HabitFile::embedded().habits();
+        let days = days(zone, epoch, first, date("2026-03-30"), &habits);
+        let hours: Vec<_> = days.iter().map(|d| (d.end - d.start) / 60).collect();
+        assert_eq!(hours, [24, 24, 23, 24]);
+        assert_eq!(days[1].start, Minute(0));
+    }
+
+    #[test]
+    fn a_date_that_the_zone_skipped_is_no_day() {
+        let zone = chrono_tz::Pacific::Apia;
+        let first = date("2011-12-29");
+        let habits = HabitFile::embedded().habits();
+        let days = days(
+            zone,
+            midnight(zone, first),
+            first,
+            date("2011-12-31"),
+            &habits,
+        );
+        let dates: Vec<_> = days.iter().map(|d| d.date.to_string()).collect();
+        assert_eq!(dates, ["2011-12-28", "2011-12-29", "2011-12-31"]);
+    }
+
+    #[test]
+    fn the_clock_jumps_where_the_zone_does() {
+        let zone = chrono_tz::Europe::London;
+        let epoch = midnight(zone, date("2026-03-28"));
+        let clock = CivilClock::of(zone, epoch, epoch + Duration::days(3));
+        // 01:00 UTC on the 29th is minute 1500.
+        assert_eq!(clock.at(Minute(1499)), 1499);
+        assert_eq!(clock.at(Minute(1500)), 1560);
+        assert!(clock.changes_between(Minute(1400), Minute(1600)));
+        assert!(!clock.changes_between(Minute(0), Minute(1400)));
+    }
+}

@@ -1,0 +1,21 @@
+//! Tests that hold the program against numbers, texts and files from outside it.
+#![expect(
+    clippy::unwrap_used,
+    reason = "in a test a panic with the line is the message wanted"
+)]
+
+mod acceptance;
+mod architecture;
+mod bad_input;
+mod clock_vectors;
+mod demo_report;
+mod demo_ward;
+mod dependencies;
+mod documentation;
+mod output_folder;
+mod pictures;
+mod properties;
+mod reference;
+mod rosters;
+mod rules;
+mod scratch;

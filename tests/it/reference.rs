@@ -1,0 +1,5 @@
+//! Published and independently computed numbers, each with its source and tolerance.
+
+mod cascade;
+mod pacemaker;
+mod sleep;

@@ -1,0 +1,317 @@
+//! The cortisol cascade against its reference scenarios.
+//!
+//! Source: reference values of the recommended cortisol model (`reference_values.json`, Python prototype, classical Runge-Kutta, 1 min),
+//! with the gate of the biological night for S2, S4 and S6. Tolerance stated there: 1 nmol/L and 3 min.
+
+use acroshift::physiology::cascade::{Cascade, SleepDebt};
+use acroshift::physiology::day::{CortisolSeries, cortisol_day};
+use acroshift::physiology::{CortisolDay, Member, MemberTrack, ModelSets, SleepEpisode};
+use acroshift::units::Minute;
+
+const TOLERANCE_NMOL_L: f64 = 1.0;
+const TOLERANCE_MIN: i64 = 3;
+const DAY: i64 = 1440;
+
+struct Scenario {
+    sleeps: Vec<(i64, i64)>,
+    cbtmin: Box<dyn Fn(i64) -> f64>,
+    pulse: bool,
+}
+
+impl Scenario {
+    fn of(sleeps: Vec<(i64, i64)>) -> Self {
+        Self {
+            sleeps,
+            cbtmin: Box::new(|_| 240.0),
+            pulse: true,
+        }
+    }
+
+    fn run(&self, days: i64) -> Vec<f64> {
+        let mut sets = ModelSets::embedded();
+        if !self.pulse {
+            sets.cascade.waking.pulse.value = 0.0;
+        }
+        let cascade = Cascade::new(&sets.cascade);
+        let track = MemberTrack {
+            member: Member::mean(&sets.ensemble, 30.0),
+            sleeps: self
+                .sleeps
+                .iter()
+                .map(|&(from, to)| SleepEpisode {
+                    from: Minute(from),
+                    to: Minute(to),
+                    cut: false,
+                })
+                .collect(),
+            cbtmin_min: (-2..=days + 1)
+                .map(|day| Minute(day * DAY).as_f64() + (self.cbtmin)(day))
+                .collect(),
+            habitual_cbtmin_min: 240.0,
+        };
+        let mut state = cascade.start();
+        let span = (Minute(0), Minute(days * DAY));
+        cascade
+            .run(&[track], SleepDebt::Off, span, &mut state)
+            .iter()
+            .map(|row| row[0])
+            .collect()
+    }
+}
+
+fn nights(days: i64) -> Vec<(i64, i64)> {
+    (0..days).map(|d| (d * DAY - 60, d * DAY + 420)).collect()
+}
+
+/// Habitual nights that begin before `until`, then the given sleeps.
+fn nights_then(until: i64, more: &[(i64, i64)]) -> Vec<(i64, i64)> {
+    let mut sleeps: Vec<_> = nights(7).into_iter().filter(|s| s.0 < until).collect();
+    sleeps.extend_from_slice(more);
+    sleeps
+}
+
+fn day(values: &[f64], from: i64) -> CortisolDay {
+    let series = CortisolSeries {
+        from: Minute(0),
+        values,
+    };
+    cortisol_day(series, (Minute(from), Minute(from + DAY)), 0.6).unwrap()
+}
+
+fn clock(text: &str) -> i64 {
+    let (hour, minute) = text.split_once(':').unwrap();
+    hour.parse::<i64>().unwrap() * 60 + minute.parse::<i64>().unwrap()
+}
+
+#[track_caller]
+fn check_time(what: &str, found: Minute, expected: &str) {
+    let difference = (found.0 - clock(expected) + DAY / 2).rem_euclid(DAY) - DAY / 2;
+    assert!(
+        difference.abs() <= TOLERANCE_MIN,
+        "{what} {difference} min from {expected}"
+    );
+}
+
+#[track_caller]
+fn check_value(what: &str, found: f64, expected: f64) {
+    assert!(
+        (found - expected).abs() <= TOLERANCE_NMOL_L,
+        "{what} {found:.2}, expected {expected}"
+    );
+}
+
+#[expect(
+    clippy::cast_possible_truncation,
+    reason = "an acrophase lies within a day"
+)]
+#[track_caller]
+fn check(name: &str, found: &CortisolDay, from: i64, expected: &str) {
+    // `expected`: peak @ nadir @ mean amplitude acrophase, as in the reference table.
+    let cells: Vec<&str> = expected.split_whitespace().collect();
+    let number = |index: usize| cells[index].parse::<f64>().unwrap();
+    check_value(&format!("{name} peak"), found.peak, number(0));
+    check_time(&format!("{name} peak"), found.peak_at, cells[1]);
+    check_value(&format!("{name} nadir"), found.nadir, number(2));
+    check_time(&format!("{name} nadir"), found.nadir_at, cells[3]);
+    check_value(&format!("{name} mean"), found.mean, number(4));
+    check_value(&format!("{name} amplitude"), found.amplitude, number(5));
+    let acrophase = Minute(from + found.acrophase_min.round() as i64);
+    check_time(&format!("{name} acrophase"), acrophase, cells[6]);
+}
+
+const NOON_4: i64 = 4 * DAY + 720;
+
+#[test]
+fn the_day_worker_agrees_with_the_reference() {
+    let values = Scenario::of(nights(7)).run(6);
+    let found = day(&values, NOON_4);
+    check(
+        "S0",
+        &found,
+        NOON_4,
+        "427.8 08:04 56.2 00:39 210.6 159.3 10:23",
+    );
+    check_time("S0 quiescence begins", found.quiescent.0, "19:09");
+    check_time("S0 quiescence ends", found.quiescent.1, "03:29");
+    let clock_values = [
+        (0, 59.3),
+        (2, 72.3),
+        (4, 169.2),
+        (6, 296.0),
+        (7, 319.6),
+        (8, 427.4),
+        (9, 396.6),
+        (10, 362.6),
+        (12, 325.0),
+        (14, 279.5),
+        (16, 220.8),
+        (18, 159.1),
+        (20, 105.1),
+        (22, 73.6),
+    ];
+    for (hour, expected) in clock_values {
+        let index = usize::try_from(5 * DAY + hour * 60).unwrap();
+        check_value(&format!("S0 at {hour}"), values[index], expected);
+    }
+}
+
+#[test]
+fn without_the_waking_pulse_the_peak_is_lower_and_later() {
+    let scenario = Scenario {
+        pulse: false,
+        ..Scenario::of(nights(7))
+    };
+    let found = day(&scenario.run(6), NOON_4);
+    check(
+        "S0 no pulse",
+        &found,
+        NOON_4,
+        "345.3 09:38 56.2 00:39 203.5 147.1 10:33",
+    );
+}
+
+#[test]
+fn early_and_late_rising_agree_with_the_reference() {
+    let mut early = nights(7);
+    early[5] = (5 * DAY - 150, 5 * DAY + 270);
+    let found = day(&Scenario::of(early).run(6), NOON_4);
+    check(
+        "S1",
+        &found,
+        NOON_4,
+        "412.9 05:36 44.4 00:12 216.0 156.9 09:56",
+    );
+    let mut late = nights(7);
+    late[5] = (5 * DAY + 60, 5 * DAY + 540);
+    let found = day(&Scenario::of(late).run(6), NOON_4);
+    check(
+        "S1b",
+        &found,
+        NOON_4,
+        "408.9 09:59 67.4 23:16 203.9 147.4 10:48",
+    );
+}
+
+#[test]
+fn the_first_night_shift_agrees_with_the_gate_of_the_biological_night() {
+    let sleeps = nights_then(
+        5 * DAY - 60,
+        &[
+            (5 * DAY + 480, 5 * DAY + 900),
+            (6 * DAY + 480, 6 * DAY + 900),
+        ],
+    );
+    let found = day(&Scenario::of(sleeps).run(7), 5 * DAY);
+    check(
+        "S2",
+        &found,
+        5 * DAY,
+        "345.3 09:38 67.4 23:16 214.5 138.5 10:03",
+    );
+}
+
+#[test]
+fn a_fully_adapted_worker_is_a_day_worker_nine_hours_later() {
+    let scenario = Scenario {
+        sleeps: (0..8).map(|d| (d * DAY + 480, d * DAY + 960)).collect(),
+        cbtmin: Box::new(|_| 780.0),
+        pulse: true,
+    };
+    let found = day(&scenario.run(7), 5 * DAY);
+    check(
+        "S3",
+        &found,
+        5 * DAY,
+        "427.8 17:04 56.2 09:39 210.6 159.3 19:23",
+    );
+}
+
+#[test]
+fn twelve_hours_of_misalignment_agree_with_the_reference() {
+    let sleeps = (0..8).map(|d| (d * DAY + 660, d * DAY + 1140)).collect();
+    let found = day(&Scenario::of(sleeps).run(7), 5 * DAY);
+    check(
+        "S4",
+        &found,
+        5 * DAY,
+        "345.3 09:38 72.8 23:34 219.0 130.2 10:07",
+    );
+}
+
+#[test]
+fn an_eight_hour_advance_of_one_sleep_agrees_with_the_reference() {
+    let sleeps = nights_then(
+        5 * DAY - 60,
+        &[
+            (4 * DAY + 900, 4 * DAY + 1380),
+            (5 * DAY + 900, 5 * DAY + 1380),
+        ],
+    );
+    let found = day(&Scenario::of(sleeps).run(6), NOON_4);
+    check(
+        "S5",
+        &found,
+        NOON_4,
+        "345.3 09:38 62.2 22:43 220.1 129.3 09:05",
+    );
+}
+
+/// Five nights with `CBTmin` 33 min later each day from 23:00 of day 4 (S6); `CBTmin` of day d solves t = 240 + 33 (t - start) / 1440.
+#[test]
+fn five_nights_with_a_moving_clock_agree_with_the_reference() {
+    let start = Minute(5 * DAY - 60).as_f64();
+    let cbtmin = move |day: i64| {
+        let midnight = Minute(day * DAY).as_f64();
+        let unmoved = midnight + 240.0;
+        let share = 33.0 / 1440.0;
+        let at = (unmoved - share * start) / (1.0 - share);
+        // The reference stops moving at 23:00 of day 9, after the last feature that is compared.
+        (at - midnight).max(240.0)
+    };
+    let mut sleeps = nights_then(5 * DAY - 60, &[]);
+    sleeps.extend((5..11).map(|d| (d * DAY + 480, d * DAY + 900)));
+    let scenario = Scenario {
+        sleeps,
+        cbtmin: Box::new(cbtmin),
+        pulse: true,
+    };
+    let values = scenario.run(10);
+    let expected = [
+        "345.4 09:51 67.1 23:48 217.9 136.5 10:16",
+        "345.4 10:25 67.3 00:00 218.2 136.6 10:51",
+        "334.4 10:52 67.1 00:22 216.3 133.0 11:25",
+        "314.3 13:36 67.1 00:56 212.7 126.7 12:03",
+        "317.5 15:40 67.1 01:29 209.3 121.4 12:44",
+    ];
+    for (night, row) in (0..).zip(expected) {
+        let from = (5 + night) * DAY;
+        check(
+            &format!("S6 n{}", night + 1),
+            &day(&values, from),
+            from,
+            row,
+        );
+    }
+}
+
+#[test]
+fn phase_and_sleep_moved_together_move_the_curve() {
+    let moved: Vec<_> = nights(7).iter().map(|s| (s.0 + 90, s.1 + 90)).collect();
+    let base = Scenario::of(nights(7)).run(6);
+    let later = Scenario {
+        cbtmin: Box::new(|_| 330.0),
+        ..Scenario::of(moved)
+    }
+    .run(6);
+    let at = usize::try_from(5 * DAY).unwrap();
+    for offset in (0..1200).step_by(60) {
+        let difference = base[at + offset] - later[at + offset + 90];
+        assert!(difference.abs() < 1e-6, "{difference} at {offset}");
+    }
+}
+
+#[test]
+fn cortisol_stays_positive_without_any_sleep() {
+    let values = Scenario::of(nights_then(2 * DAY, &[])).run(6);
+    assert!(values.iter().all(|value| *value > 0.0));
+}

@@ -1,0 +1,139 @@
+//! The coupled sleep and pacemaker simulation against thirteen reference cases.
+//!
+//! Source: reference cases of the sleep mechanism (mean member, `hilaire2007`, default light), computed by a prototype in Python
+//! and confirmed by a second one written from the rules alone.
+//! Tolerance as suggested there: sleep times 2 min (undisturbed waking sits exactly on the threshold), `CBTmin` 0.005 h.
+
+use acroshift::physiology::coupled::{live, warm_up};
+use acroshift::physiology::{Member, ModelSets, coupled_models};
+use acroshift::timeline::{CivilClock, CivilDay, DutySpan, HabitFile, Timeline};
+use acroshift::units::{ClockHour, Minute, minutes_to_hours};
+use chrono::{Days, NaiveDate};
+use serde_json::Value;
+
+const CASES: &str = include_str!("data/reference_cases.json");
+
+/// `d2 08:00` in minutes since midnight of day 0.
+fn minute(text: &str) -> i64 {
+    let (day, clock) = text.split_once(' ').unwrap();
+    let (hour, min) = clock.split_once(':').unwrap();
+    let number = |part: &str| part.parse::<i64>().unwrap();
+    number(&day[1..]) * 1440 + number(hour) * 60 + number(min)
+}
+
+fn timeline(duties: &[(i64, i64)]) -> Timeline {
+    let last = duties.iter().map(|d| d.1).max().unwrap_or(0);
+    let end = (last / 1440 + 4) * 1440;
+    let clock = |at: i64| ClockHour::wrapping(minutes_to_hours(at));
+    let date = NaiveDate::from_ymd_opt(2026, 1, 5).unwrap();
+    let days = (-1..end / 1440)
+        .map(|day| CivilDay {
+            date: date + Days::new(u64::try_from(day + 1).unwrap()),
+            start: Minute(day * 1440),
+            end: Minute((day + 1) * 1440),
+            sunrise: Minute(day * 1440 + 420),
+            sunset: Minute(day * 1440 + 1140),
+        })
+        .collect();
+    Timeline {
+        duties: duties
+            .iter()
+            .map(|&(start, stop)| DutySpan {
+                start: Minute(start),
+                end: Minute(stop),
+                start_clock: clock(start),
+                end_clock: clock(stop),
+                commute_min: None,
+                light: None,
+            })
+            .collect(),
+        days,
+        clock: CivilClock::steady(),
+        end: Minute(end),
+        habits: HabitFile::embedded().habits(),
+    }
+}
+
+fn pair(value: &Value) -> (i64, i64) {
+    (
+        minute(value[0].as_str().unwrap()),
+        minute(value[1].as_str().unwrap()),
+    )
+}
+
+#[test]
+fn the_entry_state_agrees_with_the_reference() {
+    let sets = ModelSets::embedded();
+    let member = Member::mean(&sets.ensemble, 30.0);
+    let habits = HabitFile::embedded().habits();
+    let warm = warm_up(&coupled_models(&sets), &[member], &habits);
+    let file: Value = serde_json::from_str(CASES).unwrap();
+    let facts = &file["facts"]["hilaire2007"];
+    let state = warm.state();
+    for (index, found) in [state.x[0], state.xc[0], state.n[0]].iter().enumerate() {
+        let expected = facts["state_noon"][index].as_f64().unwrap();
+        assert!(
+            (found - expected).abs() < 1e-6,
+            "{found}, expected {expected}"
+        );
+    }
+    let cbtmin_h = warm.cbtmin_min()[0] / 60.0 + 24.0;
+    let expected = facts["cbtmin_clock"].as_f64().unwrap();
+    assert!(
+        (cbtmin_h - expected).abs() < 1e-4,
+        "{cbtmin_h}, expected {expected}"
+    );
+}
+
+#[test]
+fn sleep_and_phase_of_every_reference_case_are_reproduced() {
+    let sets = ModelSets::embedded();
+    let models = coupled_models(&sets);
+    let file: Value = serde_json::from_str(CASES).unwrap();
+    let cases = file["cases"].as_object().unwrap();
+    assert_eq!(cases.len(), 13);
+    for (name, case) in cases {
+        let member = Member {
+            sees_morning_daylight: !name.contains("avoided"),
+            ..Member::mean(&sets.ensemble, 30.0)
+        };
+        let duties: Vec<_> = case["duties"]
+            .as_array()
+            .unwrap()
+            .iter()
+            .map(pair)
+            .collect();
+        let timeline = timeline(&duties);
+        let warm = warm_up(&models, &[member], &timeline.habits);
+        let track = live(&models, &warm, &timeline).remove(0);
+        check_sleeps(name, case, &track.sleeps);
+        for expected in case["cbtmin"].as_array().unwrap() {
+            let expected = expected.as_f64().unwrap();
+            let found = track.cbtmin_nearest(expected * 60.0) / 60.0;
+            assert!(
+                (found - expected).abs() < 0.005,
+                "{name}: CBTmin {found}, expected {expected}"
+            );
+        }
+    }
+}
+
+#[track_caller]
+fn check_sleeps(name: &str, case: &Value, sleeps: &[acroshift::physiology::SleepEpisode]) {
+    let expected: Vec<_> = case["sleeps"]
+        .as_array()
+        .unwrap()
+        .iter()
+        .map(pair)
+        .collect();
+    let first = expected[0].0;
+    let found = sleeps.iter().filter(|sleep| sleep.from.0 >= first - 2);
+    for ((from, to), sleep) in expected.iter().zip(found) {
+        assert!(
+            (sleep.from.0 - from).abs() <= 2 && (sleep.to.0 - to).abs() <= 2,
+            "{name}: slept {:?}-{:?}, expected {from}-{to}",
+            sleep.from,
+            sleep.to
+        );
+    }
+}

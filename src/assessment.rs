@@ -197,13 +197,5 @@ fn assumed_until(subject: &Subject<'_>) -> Minute {
     } else {
         history.assumed_days.value
     };
-    first.start + whole_minutes(days)
-}
-
-#[expect(
-    clippy::cast_possible_truncation,
-    reason = "a week or two in minutes fits an i64"
-)]
-fn whole_minutes(days: f64) -> i64 {
-    (days * 1440.0).round() as i64
+    first.start + Minute::nearest(days * 1440.0).0
 }

@@ -77,7 +77,7 @@ pub(crate) fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
         Ok(ending) => ExitCode::from(ending.code()),
         Err(stop) if output::is_broken_pipe(&stop.error) => ExitCode::SUCCESS,
         Err(stop) => {
-            output::tell(&format!("acroshift: {:#}", stop.error));
+            output::tell(format!("acroshift: {:#}\n", stop.error).as_bytes());
             ExitCode::from(stop.ending.code())
         }
     }

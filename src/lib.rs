@@ -94,6 +94,13 @@ pub fn screen(
     let sets = ModelSets::embedded();
     let criteria = Criteria::embedded();
 
+    // A commute is the worker's own: the planner's generic adult does not have it.
+    let generic = match screening.audience {
+        Audience::Planner => Some(roster.without_commutes()),
+        Audience::Clinician => None,
+    };
+    let roster = generic.as_ref().unwrap_or(roster);
+
     // Civil time becomes elapsed time.
     let scene = SiteScene {
         work_light: work_light(screening.site.task_light, &sets),

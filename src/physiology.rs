@@ -28,7 +28,7 @@ use crate::timeline::Timeline;
 use crate::units::Minute;
 use cascade::{Cascade, SleepDebt};
 use coupled::{CoupledModels, ENTRY, REMEMBERED_DAYS, WarmUnit};
-use day::{CortisolSeries, cortisol_day};
+use day::{CortisolSeries, Stretch, cortisol_day};
 use pacemaker::LANES;
 use rayon::prelude::*;
 
@@ -181,7 +181,9 @@ fn simulate_unit(
         .map(|day| {
             lanes
                 .iter()
-                .filter_map(|values| cortisol_day(series(values), (day.start, day.end), share))
+                .filter_map(|values| {
+                    cortisol_day(series(values), Stretch::date(day.start, day.end), share)
+                })
                 .collect()
         })
         .collect();
@@ -213,7 +215,7 @@ fn quiescent_reference(
     series: CortisolSeries<'_>,
     share: f64,
 ) -> Option<QuiescentReference> {
-    let day = cortisol_day(series, (ENTRY + -1440, ENTRY), share)?;
+    let day = cortisol_day(series, Stretch::whole(ENTRY + -1440, ENTRY), share)?;
     let (from, to) = day.quiescent;
     let cbtmin = track.habitual_cbtmin_min;
     let asleep: i64 = track.sleeps.iter().map(|s| s.inside(from, to)).sum();

@@ -16,8 +16,8 @@ pub mod workers;
 
 pub use audience::Audience;
 pub use document::{
-    BandValue, DayRow, FindingRow, LineSection, LineShiftRow, LineWindowRow, NumberRow, PackRow,
-    Provenance, ScreenReport, ShiftRow, Summary, WindowRow, WorkerSection,
+    BandValue, CasedBand, DayRow, FindingRow, LineSection, LineShiftRow, LineWindowRow, NumberRow,
+    PackRow, Provenance, ScreenReport, ShiftRow, Summary, WindowRow, WorkerSection,
 };
 
 use crate::assessment::{Assessment, Attention, Criteria, Pack, WindowClass};
@@ -80,7 +80,7 @@ pub fn build(input: &ReportInput<'_>) -> ScreenReport {
         .map(|worker| workers::section(input, worker))
         .collect();
     audience::order_workers(input.audience, &mut workers);
-    let lines = lines::sections(input);
+    let lines = audience::ordered_lines(input.audience, &workers, lines::sections(input));
     let findings = findings::rows(input);
     ScreenReport {
         audience: input.audience,
@@ -138,10 +138,7 @@ fn summary(input: &ReportInput<'_>, findings: &[FindingRow]) -> Summary {
         unmarked: shared(WindowClass::Unmarked),
         not_judged: all(WindowClass::NotJudged),
         listed: all(WindowClass::Listed),
-        assumed: windows
-            .iter()
-            .filter(|w| w.history_assumed && w.is_model_only() && w.class != WindowClass::NotJudged)
-            .count(),
+        assumed: windows.iter().filter(|w| w.is_set_aside()).count(),
         priority: with(Attention::Priority),
         review: with(Attention::Review),
         note: with(Attention::Note),
@@ -204,6 +201,7 @@ fn packs(packs: &[Pack]) -> Vec<PackRow> {
             title: pack.title.clone(),
             reading: pack.reading.clone(),
             as_seen: pack.as_seen.clone(),
+            left_out: pack.left_out.clone(),
             night: format!(
                 "night duty: at least {} h between {} and {} ({}; {})",
                 pack.night.at_least_h,
@@ -212,23 +210,7 @@ fn packs(packs: &[Pack]) -> Vec<PackRow> {
                 pack.night.source,
                 pack.night.tier
             ),
-            rules: pack
-                .rules
-                .iter()
-                .map(|rule| {
-                    (
-                        rule.id.clone(),
-                        format!(
-                            "{} {} {} {}",
-                            rule.metric,
-                            rule.op.sign(),
-                            rule.value,
-                            rule.unit
-                        ),
-                        format!("{}; {}", rule.citation(), rule.source),
-                    )
-                })
-                .collect(),
+            rules: pack.rules.iter().map(wording::rule_row).collect(),
         })
         .collect()
 }

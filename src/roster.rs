@@ -95,6 +95,16 @@ impl Roster {
         duty::joined(self.shifts_of(worker), join_gap_min)
     }
 
+    /// The same roster without what it says of the way to work.
+    #[must_use]
+    pub fn without_commutes(&self) -> Self {
+        let mut roster = self.clone();
+        for shift in &mut roster.shifts {
+            shift.commute_min = None;
+        }
+        roster
+    }
+
     /// Is any date of the worker missing from the file?
     pub fn is_incomplete(&self, worker: WorkerId) -> bool {
         self.unknown.iter().any(|gap| gap.worker == worker)

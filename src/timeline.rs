@@ -37,7 +37,7 @@ pub struct DutySpan {
 pub struct Timeline {
     /// Duties, ascending, disjoint.
     pub duties: Vec<DutySpan>,
-    /// Local dates from the day before the first date to the last one, ascending.
+    /// Local dates from the day before the first date to the one after the last end, ascending.
     pub days: Vec<CivilDay>,
     /// Local clock against elapsed time.
     pub clock: CivilClock,
@@ -55,15 +55,6 @@ impl Timeline {
             .get(index)
             .is_some_and(|day| (day.sunrise..day.sunset).contains(&minute))
     }
-
-    /// Duties as they are known to a timeline of the same dates without any duty.
-    #[must_use]
-    pub fn without_duties(&self) -> Self {
-        Self {
-            duties: Vec::new(),
-            ..self.clone()
-        }
-    }
 }
 
 /// What the site adds to a roster.
@@ -80,7 +71,7 @@ pub struct SiteScene {
 pub struct Axis {
     /// Instant of minute 0: local midnight that begins the first date analysed.
     pub epoch: DateTime<Utc>,
-    /// Local dates from the day before the first date to the last one.
+    /// Local dates from the day before the first date to the one after the last end.
     pub days: Vec<CivilDay>,
     /// Local clock against elapsed time.
     pub clock: CivilClock,
@@ -99,7 +90,9 @@ impl Axis {
         let last = roster.shifts.iter().map(|shift| shift.end).max()?;
         let zone = roster.zone;
         let first_date = first.with_timezone(&zone).date_naive();
+        // One date more than the roster, so that the last night and its `CBTmin` are complete in every member.
         let last_date = last.with_timezone(&zone).date_naive();
+        let last_date = last_date.succ_opt().unwrap_or(last_date);
         let epoch = civil::midnight(zone, first_date);
         Some(Self {
             epoch,
@@ -110,16 +103,11 @@ impl Axis {
         })
     }
 
-    /// Dates of the roster, from that of the first shift to that on which the last one ends.
-    pub fn dates(&self) -> &[CivilDay] {
-        // The days begin with the one before the first date.
-        self.days.get(1..).unwrap_or_default()
-    }
-
-    /// Dates on which shifts may begin: the last one is that of the last start, not of the last end.
+    /// Dates of the roster: from that of the first start to that of the last start.
     pub fn rostered_dates(&self) -> &[CivilDay] {
         let last = self.minute(self.last_start);
-        let dates = self.dates();
+        // The days begin with the one before the first date.
+        let dates = self.days.get(1..).unwrap_or_default();
         &dates[..dates.partition_point(|day| day.start <= last)]
     }
 

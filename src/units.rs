@@ -73,6 +73,22 @@ impl Minute {
         minutes_to_hours(self.0 - earlier.0)
     }
 
+    /// The whole minute nearest to a decimal one.
+    #[expect(
+        clippy::cast_possible_truncation,
+        reason = "minutes of a roster fit an i64 by far"
+    )]
+    pub fn nearest(minute: f64) -> Self {
+        Self(minute.round() as i64)
+    }
+
+    /// The whole minute from which on a decimal one has passed.
+    ///
+    /// Rounding errors of a millionth of a minute do not cost a minute.
+    pub fn from_which(minute: f64) -> Self {
+        Self(Self::nearest((minute - 1e-6).ceil()).0)
+    }
+
     /// The minute as decimal minutes, for equations.
     #[expect(
         clippy::cast_precision_loss,
@@ -114,24 +130,13 @@ pub fn minutes_to_hours(minutes: i64) -> f64 {
 ///
 /// ```
 /// use acroshift::units::ClockHour;
-/// assert_eq!(ClockHour::new(23.5)?.to_string(), "23:30");
+/// assert_eq!(ClockHour::wrapping(47.5).to_string(), "23:30");
 /// assert_eq!(ClockHour::wrapping(-0.25).to_string(), "23:45");
-/// # Ok::<(), acroshift::units::OutOfRange>(())
 /// ```
 #[derive(Debug, Clone, Copy, PartialEq, PartialOrd)]
 pub struct ClockHour(f64);
 
 impl ClockHour {
-    /// A clock hour.
-    ///
-    /// # Errors
-    ///
-    /// [`OutOfRange`] unless the value lies in [0, 24).
-    pub fn new(hour: f64) -> Result<Self, OutOfRange> {
-        // The largest number below 24.
-        within("a clock hour", "h", (0.0, 24.0_f64.next_down()), hour).map(Self)
-    }
-
     /// The clock hour shown by a clock that has run `hours` past midnight, whatever their sign.
     pub fn wrapping(hours: f64) -> Self {
         Self(hours - 24.0 * (hours / 24.0).floor())
@@ -159,13 +164,9 @@ impl fmt::Display for ClockHour {
 pub struct Phase(f64);
 
 impl Phase {
-    /// A marker at `hours` since the epoch.
-    ///
-    /// # Errors
-    ///
-    /// [`OutOfRange`] for a value that is not finite.
-    pub fn at_hours(hours: f64) -> Result<Self, OutOfRange> {
-        within("a phase", "h", (f64::MIN, f64::MAX), hours).map(Self)
+    /// A marker at decimal `minutes` since the epoch.
+    pub fn at_minute(minutes: f64) -> Self {
+        Self(minutes / MINUTES_PER_HOUR)
     }
 
     /// Hours since the epoch.
@@ -180,17 +181,21 @@ impl Phase {
 ///
 /// ```
 /// use acroshift::units::{Phase, PhaseShift};
-/// let habitual = Phase::at_hours(3.5)?;
-/// let now = Phase::at_hours(24.0 + 5.0)?;
+/// let habitual = Phase::at_minute(3.5 * 60.0);
+/// let now = Phase::at_minute((24.0 + 5.0) * 60.0);
 /// // `CBTmin` stands an hour and a half later than on habitual days.
 /// assert!(((habitual - now).hours() - -1.5).abs() < 1e-12);
 /// assert_eq!((habitual - now).to_string(), "1.5 h later");
-/// # Ok::<(), acroshift::units::OutOfRange>(())
 /// ```
 #[derive(Debug, Clone, Copy, PartialEq, PartialOrd)]
 pub struct PhaseShift(f64);
 
 impl PhaseShift {
+    /// A displacement of `hours`, positive when earlier, moved by whole days into (-12, 12].
+    pub fn earlier_by(hours: f64) -> Self {
+        Self(crate::numeric::circular::wrap_half(hours, 24.0))
+    }
+
     /// Hours, in (-12, 12]: positive is earlier.
     pub fn hours(self) -> f64 {
         self.0
@@ -202,19 +207,6 @@ impl Sub for Phase {
 
     fn sub(self, later: Self) -> PhaseShift {
         PhaseShift(crate::numeric::circular::wrap_half(self.0 - later.0, 24.0))
-    }
-}
-
-impl Add<PhaseShift> for Phase {
-    type Output = Self;
-
-    /// The phase moved by a shift: an advance makes it earlier.
-    #[expect(
-        clippy::suspicious_arithmetic_impl,
-        reason = "a positive shift is earlier, so it is taken away from the hour"
-    )]
-    fn add(self, shift: PhaseShift) -> Self {
-        Self(self.0 - shift.0)
     }
 }
 
@@ -251,10 +243,8 @@ mod tests {
 
     #[test]
     fn values_that_are_no_number_are_refused() {
-        assert!(ClockHour::new(f64::NAN).is_err());
-        assert!(ClockHour::new(24.0).is_err());
         assert!(Lux::new(-1.0).is_err());
-        assert!(Phase::at_hours(f64::INFINITY).is_err());
+        assert!(Lux::new(f64::NAN).is_err());
     }
 
     #[test]
@@ -264,11 +254,9 @@ mod tests {
     }
 
     #[test]
-    fn an_advance_added_to_a_phase_makes_it_earlier() {
-        let a = Phase::at_hours(4.0).unwrap();
-        let b = Phase::at_hours(2.5).unwrap();
-        let shift = a - b;
-        assert!((shift.hours() - 1.5).abs() < 1e-12);
-        assert!(((a + shift).hours() - 2.5).abs() < 1e-12);
+    fn decimal_minutes_become_whole_ones() {
+        assert_eq!(Minute::nearest(-0.4), Minute(0));
+        assert_eq!(Minute::from_which(10.000_000_1), Minute(10));
+        assert_eq!(Minute::from_which(10.1), Minute(11));
     }
 }

@@ -1,11 +1,14 @@
 //! From outcomes and estimates to findings: one per worker or line and cause.
 
-use super::finding::{Attention, Finding, FindingCode, FindingKind, MembersHold, SubjectOf};
+use super::finding::{
+    Attention, BrokenRule, Finding, FindingCode, FindingKind, MembersHold, Occurrence, SubjectOf,
+};
 use super::rules::{self, Outcome, SO_FAR, Verdict};
 use super::window::{Reason, RecoveryWindow, WindowClass};
 use super::{AssessmentInput, LineAssessment, WorkerAssessment};
 use crate::numeric::quantile::ratio;
 use crate::source::OriginId;
+use crate::units::Minute;
 use std::collections::{BTreeMap, BTreeSet};
 
 /// All findings, most urgent first, then by time and subject.
@@ -27,11 +30,9 @@ pub(super) fn findings(
         findings.extend(period_limits(&rows));
     }
     for line in lines {
-        let worker = workers.iter().find(|worker| worker.line == line.line.id);
-        if let Some(worker) = worker {
-            findings.extend(sleep_windows(line, worker, input));
-            findings.extend(long_awake(line, input));
-        }
+        let windows = line_windows(line, workers);
+        findings.extend(sleep_windows(line, &windows, input));
+        findings.extend(long_awake(line, &windows, input));
     }
     findings.extend(not_judged(input, workers));
     findings.sort_by(|a, b| {
@@ -80,18 +81,74 @@ impl Rows<'_> {
     }
 }
 
+fn is_judged(window: &RecoveryWindow) -> bool {
+    !matches!(window.class, WindowClass::NotJudged | WindowClass::Listed)
+}
+
 fn is_short(outcome: &Outcome) -> bool {
     matches!(outcome.verdict, Verdict::NotMet | Verdict::WithinFloor(_))
 }
 
-fn rule_ids<'a>(outcomes: impl IntoIterator<Item = &'a Outcome>) -> Vec<String> {
-    let ids: BTreeSet<&str> = outcomes.into_iter().map(|o| o.rule.as_str()).collect();
-    ids.into_iter().map(str::to_owned).collect()
+/// The rules of outcomes, each once: law first, then by id.
+fn broken_rules(outcomes: &[&Outcome]) -> Vec<BrokenRule> {
+    let mut rules: BTreeMap<(bool, &str), BrokenRule> = BTreeMap::new();
+    for outcome in outcomes {
+        rules
+            .entry((!outcome.is_law, outcome.rule.as_str()))
+            .or_insert_with(|| BrokenRule {
+                id: outcome.rule.clone(),
+                is_law: outcome.is_law,
+                within_floor: matches!(outcome.verdict, Verdict::WithinFloor(_)),
+                metric: outcome.metric.clone(),
+                op: outcome.op,
+                limit: outcome.limit,
+                unit: outcome.unit.clone(),
+            });
+    }
+    rules.into_values().collect()
 }
 
-fn citations<'a>(outcomes: impl IntoIterator<Item = &'a Outcome>) -> String {
-    let sources: BTreeSet<&str> = outcomes.into_iter().map(|o| o.citation.as_str()).collect();
-    sources.into_iter().collect::<Vec<_>>().join("; ")
+/// Sources of the rules, and for law not met the derogations that the instrument knows.
+fn citations(outcomes: &[&Outcome]) -> String {
+    let sources: BTreeSet<&str> = outcomes.iter().map(|o| o.citation.as_str()).collect();
+    let derogations: BTreeSet<&str> = outcomes
+        .iter()
+        .filter(|o| o.is_law && o.verdict == Verdict::NotMet)
+        .flat_map(|o| o.derogations.iter().map(String::as_str))
+        .collect();
+    let mut text = sources.into_iter().collect::<Vec<_>>().join("; ");
+    if !derogations.is_empty() {
+        let known = derogations.into_iter().collect::<Vec<_>>().join(", ");
+        text.push_str("; no derogation declared, the instrument knows ");
+        text.push_str(&known);
+    }
+    text
+}
+
+/// Places of outcomes, each once with the value furthest from its limit.
+fn occurrences(outcomes: &[&Outcome]) -> Vec<Occurrence> {
+    let mut places: BTreeMap<(Minute, Minute), &Outcome> = BTreeMap::new();
+    for outcome in outcomes {
+        let place = places
+            .entry((outcome.start, outcome.end))
+            .or_insert(outcome);
+        if excess(outcome) > excess(place) {
+            *place = outcome;
+        }
+    }
+    places
+        .into_iter()
+        .map(|((start, end), outcome)| Occurrence {
+            start,
+            end,
+            measured: outcome.value,
+        })
+        .collect()
+}
+
+/// Distance from the limit as a share of it.
+fn excess(outcome: &Outcome) -> f64 {
+    (outcome.value - outcome.limit).abs() / outcome.limit.abs().max(1.0)
 }
 
 /// Which derogation allows what is otherwise not met, and what is due.
@@ -107,12 +164,14 @@ fn compressed_rest(rows: &Rows<'_>, line: Option<&LineAssessment>) -> Vec<Findin
     rows.worker
         .windows
         .iter()
-        .filter(|window| window.class == WindowClass::Compressed && !window.is_model_only())
+        .filter(|window| is_judged(window) && window.is_compressed_by_rest())
         .map(|window| {
             let outcomes: Vec<&Outcome> = rows.on_window(window.after).collect();
             let law: Vec<&Outcome> = outcomes.iter().copied().filter(|o| o.is_law).collect();
             let estimate = line.and_then(|line| line.estimate.windows.get(window.after));
-            let worst = law.first().or(outcomes.first());
+            let worst = law
+                .iter()
+                .max_by(|a, b| excess(a).total_cmp(&excess(b)).then(b.rule.cmp(&a.rule)));
             let own = &rows.input.criteria.rest.compressed_below;
             Finding {
                 code: FindingCode::CompressedRest,
@@ -128,18 +187,19 @@ fn compressed_rest(rows: &Rows<'_>, line: Option<&LineAssessment>) -> Vec<Findin
                 measured: Some(worst.map_or(window.hours(), |o| o.value)),
                 limit: Some(worst.map_or(own.value, |o| o.limit)),
                 unit: "h".to_owned(),
-                members: estimate.map(|e| MembersHold {
-                    hold: e.short_24h,
-                    of: e.members,
-                }),
-                rules: rule_ids(outcomes.iter().copied()),
+                members: None,
+                rules: broken_rules(&outcomes),
                 source: if outcomes.is_empty() {
                     format!("{} ({})", own.source, own.mark)
                 } else {
-                    citations(outcomes.iter().copied())
+                    citations(&outcomes)
                 },
                 rows: rows.window_rows(window),
-                occurrences: 1,
+                occurrences: vec![Occurrence {
+                    start: window.start,
+                    end: window.end,
+                    measured: window.hours(),
+                }],
                 remark: floor_remark(&outcomes),
                 history_assumed: window.history_assumed,
             }
@@ -171,7 +231,7 @@ fn rest_after_nights(rows: &Rows<'_>) -> Option<Finding> {
         .worker
         .windows
         .iter()
-        .filter(|window| window.class == WindowClass::Narrow)
+        .filter(|window| is_judged(window) && !window.is_compressed_by_rest())
         .flat_map(|window| rows.on_window(window.after))
         .filter(|outcome| is_after_nights(rows, outcome))
         .collect();
@@ -209,7 +269,7 @@ fn narrow_rest(rows: &Rows<'_>) -> Option<Finding> {
         .worker
         .windows
         .iter()
-        .filter(|window| window.class == WindowClass::Narrow)
+        .filter(|window| is_judged(window) && !window.is_compressed_by_rest())
         .flat_map(|window| rows.on_window(window.after))
         .filter(|outcome| !is_after_nights(rows, outcome))
         .collect();
@@ -252,13 +312,11 @@ fn grouped(
     outcomes: &[&Outcome],
 ) -> Option<Finding> {
     let worst = *outcomes.iter().max_by(|a, b| {
-        let excess = |o: &Outcome| (o.value - o.limit).abs() / o.limit.abs().max(1.0);
         excess(a)
             .total_cmp(&excess(b))
             .then(b.start.cmp(&a.start))
             .then(b.rule.cmp(&a.rule))
     })?;
-    let places: BTreeSet<_> = outcomes.iter().map(|o| (o.start, o.end)).collect();
     Some(Finding {
         code,
         attention,
@@ -274,10 +332,10 @@ fn grouped(
         limit: Some(worst.limit),
         unit: worst.unit.clone(),
         members: None,
-        rules: rule_ids(outcomes.iter().copied()),
-        source: citations(outcomes.iter().copied()),
+        rules: broken_rules(outcomes),
+        source: citations(outcomes),
         rows: rows.origins(outcomes.iter().flat_map(|o| o.shifts.iter().copied())),
-        occurrences: places.len(),
+        occurrences: occurrences(outcomes),
         remark: floor_remark(outcomes),
         history_assumed: false,
     })
@@ -308,19 +366,37 @@ fn period_limits(rows: &Rows<'_>) -> Vec<Finding> {
         .collect()
 }
 
-/// Windows of a line that rest on the sleep test alone: compressed ones, then narrow ones.
+/// The windows of a line, each as judged for the first worker on it whose dates are known.
+fn line_windows<'a>(
+    line: &LineAssessment,
+    workers: &'a [WorkerAssessment],
+) -> Vec<&'a RecoveryWindow> {
+    let on_line: Vec<&WorkerAssessment> =
+        workers.iter().filter(|w| w.line == line.line.id).collect();
+    (0..line.estimate.windows.len())
+        .filter_map(|index| {
+            let mut windows = on_line.iter().filter_map(|w| w.windows.get(index));
+            let first = windows.clone().next();
+            windows.find(|window| is_judged(window)).or(first)
+        })
+        .collect()
+}
+
+/// Windows of a line that the sleep test marks and the rest test does not.
 fn sleep_windows(
     line: &LineAssessment,
-    worker: &WorkerAssessment,
+    windows: &[&RecoveryWindow],
     input: &AssessmentInput<'_>,
 ) -> Vec<Finding> {
     let of = |code, reason: &Reason, usual| {
-        let windows: Vec<&RecoveryWindow> = worker
-            .windows
+        let marked: Vec<&RecoveryWindow> = windows
             .iter()
-            .filter(|window| window.is_model_only() && window.reasons.contains(reason))
+            .copied()
+            .filter(|w| is_judged(w) && w.reasons.contains(reason) && !w.is_compressed_by_rest())
+            // A window that is narrow by advice is told there.
+            .filter(|w| *reason == Reason::SleepShort || w.reasons.iter().all(Reason::is_model))
             .collect();
-        sleep_finding(line, input, code, usual, &windows)
+        sleep_finding(line, input, code, usual, &marked)
     };
     let short = of(
         FindingCode::CompressedSleep,
@@ -375,14 +451,26 @@ fn sleep_finding(
         rules: Vec::new(),
         source: format!("{} ({})", limit.source, limit.mark),
         rows: Vec::new(),
-        occurrences: counted.len(),
+        occurrences: counted
+            .iter()
+            .filter_map(|window| line.estimate.windows.get(window.after))
+            .map(|estimate| Occurrence {
+                start: estimate.start,
+                end: estimate.end,
+                measured: estimate.sleep_24h.median,
+            })
+            .collect(),
         remark: None,
         history_assumed: known.is_empty(),
     })
 }
 
 /// Duties at whose end at least half of the members have been awake for long.
-fn long_awake(line: &LineAssessment, input: &AssessmentInput<'_>) -> Option<Finding> {
+fn long_awake(
+    line: &LineAssessment,
+    windows: &[&RecoveryWindow],
+    input: &AssessmentInput<'_>,
+) -> Option<Finding> {
     let members = line.estimate.windows.first().map_or_else(
         || input.simulations.first().map_or(0, |s| s.tracks.len()),
         |window| window.members,
@@ -391,7 +479,7 @@ fn long_awake(line: &LineAssessment, input: &AssessmentInput<'_>) -> Option<Find
         .estimate
         .shifts
         .iter()
-        .filter(|shift| ratio(shift.long_awake, members) >= 0.5)
+        .filter(|shift| ratio(shift.long_awake, members) >= input.criteria.awake.from_share.value)
         .collect();
     let worst = long.iter().max_by(|a, b| {
         let median = |s: &super::estimate::ShiftEstimate| s.awake_at_end_h.median;
@@ -415,9 +503,21 @@ fn long_awake(line: &LineAssessment, input: &AssessmentInput<'_>) -> Option<Find
         rules: Vec::new(),
         source: format!("{} ({})", limit.source, limit.mark),
         rows: Vec::new(),
-        occurrences: long.len(),
+        occurrences: long
+            .iter()
+            .map(|shift| Occurrence {
+                start: shift.start,
+                end: shift.end,
+                measured: shift.awake_at_end_h.median,
+            })
+            .collect(),
         remark: None,
-        history_assumed: false,
+        history_assumed: windows
+            .iter()
+            .filter(|window| window.history_assumed)
+            .map(|window| window.end)
+            .max()
+            .is_some_and(|last| long.iter().all(|shift| shift.start <= last)),
     })
 }
 
@@ -440,7 +540,7 @@ fn not_judged(input: &AssessmentInput<'_>, workers: &[WorkerAssessment]) -> Vec<
             }
         });
         if let Some(missing) = missing {
-            findings.push(not_judged_finding(input, rule, open.len(), missing));
+            findings.push(not_judged_finding(input, rule, missing));
         }
     }
     findings
@@ -458,7 +558,6 @@ fn range(low: f64, high: f64) -> String {
 fn not_judged_finding(
     input: &AssessmentInput<'_>,
     rule: &super::pack::Rule,
-    places: usize,
     missing: String,
 ) -> Finding {
     let days = input.axis.rostered_dates();
@@ -467,18 +566,24 @@ fn not_judged_finding(
         attention: Attention::Note,
         kind: FindingKind::NotJudged,
         subject: SubjectOf::Roster,
-        start: days
-            .first()
-            .map_or(crate::units::Minute(0), |day| day.start),
-        end: days.last().map_or(crate::units::Minute(0), |day| day.end),
+        start: days.first().map_or(Minute(0), |day| day.start),
+        end: days.last().map_or(Minute(0), |day| day.end),
         measured: None,
         limit: Some(rule.value),
         unit: rule.unit.clone(),
         members: None,
-        rules: vec![rule.id.clone()],
+        rules: vec![BrokenRule {
+            id: rule.id.clone(),
+            is_law: false,
+            within_floor: false,
+            metric: rule.metric.clone(),
+            op: rule.op,
+            limit: rule.value,
+            unit: rule.unit.clone(),
+        }],
         source: rule.citation(),
         rows: Vec::new(),
-        occurrences: places.max(1),
+        occurrences: Vec::new(),
         remark: Some(missing),
         history_assumed: false,
     }

@@ -36,11 +36,11 @@ criteria! {
     /// Sleep before the next duty.
     sleep: SleepCriteria { short_24h_below, short_48h_below, short_from_share, uncertain_from_share, narrow_from_share }
     /// Hours awake on duty.
-    awake: AwakeCriteria { long_from }
+    awake: AwakeCriteria { long_from, from_share }
     /// Days that rest on an assumed history.
     history: HistoryCriteria { assumed_days, assumed_days_in_nights }
     /// Words for phase and cortisol.
-    evidence: EvidenceCriteria { phase_displacement_over, quiescent_tolerance }
+    evidence: EvidenceCriteria { phase_displacement_over, cases_apart, quiescent_tolerance }
     /// Register measures.
     register: RegisterCriteria {
         quick_return_below, long_shift_from, early_from, early_until, evening_from, evening_ends_after,

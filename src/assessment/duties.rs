@@ -1,6 +1,6 @@
 //! Duties of one worker on the elapsed axis, with what the rules measure on them.
 
-use crate::roster::{Roster, WorkerId};
+use crate::roster::{DutyBlock, Roster, Shift, WorkerId};
 use crate::timeline::{Axis, Habits};
 use crate::units::{Minute, minutes_to_hours};
 
@@ -15,7 +15,7 @@ pub struct Duty {
     pub parts: Vec<(Minute, Minute)>,
     /// Places of its shifts among the worker's shifts.
     pub shifts: Vec<usize>,
-    /// Break minutes, when every shift of it names them.
+    /// Break minutes, pauses and joined gaps included, when every shift of it names its own.
     pub break_min: Option<i64>,
 }
 
@@ -30,9 +30,12 @@ impl Duty {
         minutes_to_hours(self.parts.iter().map(|(from, to)| *to - *from).sum())
     }
 
-    /// Working hours: hours on duty without the breaks that the roster names.
+    /// Working hours: the span without breaks, pauses and joined gaps; without named breaks the hours on duty.
     pub fn work_h(&self) -> f64 {
-        self.duty_h() - minutes_to_hours(self.break_min.unwrap_or(0))
+        match self.break_min {
+            Some(minutes) => self.span_h() - minutes_to_hours(minutes),
+            None => self.duty_h(),
+        }
     }
 
     /// Minutes of [from, to) on duty.
@@ -66,20 +69,16 @@ pub fn worker_duties(
     let mut duties: Vec<Duty> = Vec::new();
     for block in roster.counted_duties(worker, habits.join_gap_min) {
         let part = (axis.minute(block.start), axis.minute(block.end));
-        let break_min = block
-            .shifts
-            .iter()
-            .map(|index| shifts[*index].break_min.map(i64::from))
-            .sum();
+        let break_min = break_min(shifts, &block, axis);
         match duties.last_mut() {
             Some(last) if is_pause(last, part, axis, habits) => {
-                last.end = part.1;
-                last.parts.push(part);
-                last.shifts.extend(block.shifts);
                 last.break_min = last
                     .break_min
                     .zip(break_min)
-                    .map(|(a, b): (i64, i64)| a + b);
+                    .map(|(a, b): (i64, i64)| a + b + (part.0 - last.end));
+                last.end = part.1;
+                last.parts.push(part);
+                last.shifts.extend(block.shifts);
             }
             _ => duties.push(Duty {
                 start: part.0,
@@ -100,6 +99,22 @@ pub fn worker_duties(
         duties,
         interruptions,
     }
+}
+
+/// Named breaks and joined gaps of a block of shifts; `None` when a shift names none.
+fn break_min(shifts: &[Shift], block: &DutyBlock, axis: &Axis) -> Option<i64> {
+    let on_shift: i64 = block
+        .shifts
+        .iter()
+        .map(|index| axis.minute(shifts[*index].end) - axis.minute(shifts[*index].start))
+        .sum();
+    let named: i64 = block
+        .shifts
+        .iter()
+        .map(|index| shifts[*index].break_min.map(i64::from))
+        .sum::<Option<i64>>()?;
+    let joined_gaps = axis.minute(block.end) - axis.minute(block.start) - on_shift;
+    Some(named + joined_gaps.max(0))
 }
 
 /// A gap inside a split duty: both parts start on one local date, the gap is short and the span is not too long.

@@ -3,12 +3,45 @@
 use super::criteria::Criteria;
 use super::duties::Duty;
 use super::window::SleepShares;
-use crate::numeric::quantile::{Quantiles, quantiles, ratio};
+use crate::numeric::circular::wrap_half;
+use crate::numeric::quantile::{Quantiles, circular_quantiles, quantiles, ratio};
 use crate::physiology::coupled::REMEMBERED_DAYS;
 use crate::physiology::{CortisolDay, MemberTrack, Simulation};
 use crate::timeline::Axis;
-use crate::units::{Minute, minutes_to_hours};
+use crate::units::{Minute, PhaseShift, minutes_to_hours};
 use chrono::NaiveDate;
+
+/// A quantity of the members. Where those who see morning daylight and those who do not are far apart,
+/// one median would describe nobody: then both cases are given.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Spread {
+    /// All members.
+    pub all: Quantiles,
+    /// Members who see morning daylight, and members who do not, if their medians are far apart.
+    pub cases: Option<[Quantiles; 2]>,
+}
+
+/// What the members say of sleep before a duty.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum SleepTest {
+    /// Short in most members.
+    Short,
+    /// Short in some.
+    Uncertain,
+    /// Short in few or none.
+    NotShort,
+}
+
+impl SleepTest {
+    /// The words as they are written everywhere.
+    pub fn words(self) -> &'static str {
+        match self {
+            Self::Short => "short",
+            Self::Uncertain => "uncertain",
+            Self::NotShort => "not short",
+        }
+    }
+}
 
 /// The members around one duty.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -51,9 +84,10 @@ pub struct WindowEstimate {
     /// Members.
     pub members: usize,
     /// Phase angle of the last main sleep minus the habitual one, hours; positive: later in the body's night than usual.
-    pub phase_displacement_h: Quantiles,
-    /// `CBTmin` at the next duty against the habitual one, hours; positive is earlier.
-    pub cbtmin_displacement_h: Quantiles,
+    /// Members who did not sleep in the last 24 h have none.
+    pub phase_displacement_h: Option<Quantiles>,
+    /// `CBTmin` at the next duty against the habitual clock hour, hours; positive is earlier.
+    pub cbtmin_displacement_h: Spread,
     /// Hours awake in the reference quiescent interval before the next duty beyond the habitual ones.
     pub quiescent_awake_excess_h: Quantiles,
 }
@@ -64,6 +98,18 @@ impl WindowEstimate {
         SleepShares {
             k24: ratio(self.short_24h, self.members),
             k48: ratio(self.short_48h, self.members),
+        }
+    }
+
+    /// The sleep test of the 24 h before the next duty.
+    pub fn sleep_test(&self, criteria: &Criteria) -> SleepTest {
+        let k24 = self.shares().k24;
+        if k24 >= criteria.sleep.short_from_share.value {
+            SleepTest::Short
+        } else if k24 >= criteria.sleep.uncertain_from_share.value {
+            SleepTest::Uncertain
+        } else {
+            SleepTest::NotShort
         }
     }
 }
@@ -104,30 +150,19 @@ pub struct CortisolEstimate {
     /// Amplitude divided by that of the member's habitual day.
     pub amplitude_ratio: Quantiles,
     /// Acrophase, minutes since the epoch; depends on sleep timing, no phase marker in shift work.
-    pub acrophase_at: Quantiles,
+    pub acrophase_at: Spread,
     /// Highest value, nmol/L.
     pub peak: Quantiles,
     /// When, minutes since the epoch.
-    pub peak_at: Quantiles,
+    pub peak_at: Spread,
     /// Lowest value, nmol/L.
     pub nadir: Quantiles,
     /// When, minutes since the epoch.
-    pub nadir_at: Quantiles,
+    pub nadir_at: Spread,
     /// The quiescent interval begins, minutes since the epoch.
-    pub quiescent_start: Quantiles,
+    pub quiescent_start: Spread,
     /// The quiescent interval ends, minutes since the epoch.
-    pub quiescent_end: Quantiles,
-}
-
-/// Medians of the habitual day, before the roster.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub struct HabitualEstimate {
-    /// `CBTmin`, clock minutes of the habitual day (local clock at the epoch).
-    pub cbtmin_clock_min: Quantiles,
-    /// Reference quiescent interval begins, hours from `CBTmin`.
-    pub quiescent_from_h: Quantiles,
-    /// Reference quiescent interval ends, hours from `CBTmin`.
-    pub quiescent_to_h: Quantiles,
+    pub quiescent_end: Spread,
 }
 
 /// Everything the members say of one line.
@@ -139,12 +174,9 @@ pub struct LineEstimate {
     pub windows: Vec<WindowEstimate>,
     /// By date.
     pub days: Vec<DayEstimate>,
-    /// The habitual day.
-    pub habitual: HabitualEstimate,
+    /// `CBTmin` of the habitual day, clock minutes.
+    pub habitual_cbtmin_min: Quantiles,
 }
-
-/// Medians further apart than this are printed apart, never pooled.
-const CASES_APART_MIN: f64 = 60.0;
 
 /// Summarises a simulation over the duties and dates of its line.
 ///
@@ -161,13 +193,13 @@ pub fn estimate(
         .collect::<Option<_>>()?;
     let windows = duties
         .windows(2)
-        .map(|pair| window(simulation, pair[0].end, pair[1].start, criteria))
+        .map(|pair| window(simulation, axis, (pair[0].end, pair[1].start), criteria))
         .collect::<Option<_>>()?;
     Some(LineEstimate {
         shifts,
         windows,
-        days: days(simulation, axis),
-        habitual: habitual(simulation)?,
+        days: days(simulation, axis, criteria),
+        habitual_cbtmin_min: over(simulation, |t| t.habitual_cbtmin_min + 1440.0)?.0,
     })
 }
 
@@ -208,14 +240,27 @@ fn shift(simulation: &Simulation, duty: &Duty, criteria: &Criteria) -> Option<Sh
 
 fn window(
     simulation: &Simulation,
-    start: Minute,
-    end: Minute,
+    axis: &Axis,
+    (start, end): (Minute, Minute),
     criteria: &Criteria,
 ) -> Option<WindowEstimate> {
     let (sleep_24h, in_24h) = over(simulation, |t| t.sleep_h(end + -1440, end))?;
     let (_, in_48h) = over(simulation, |t| t.sleep_h(end + -2880, end))?;
     let excess: Vec<f64> = (0..simulation.tracks.len())
         .map(|member| quiescent_awake_excess_h(simulation, member, end))
+        .collect();
+    // Habits follow the clock: a clock change alone is no displacement.
+    let clock_moved_h = minutes_to_hours(axis.clock.at(end) - end.0);
+    let displacements: Vec<f64> = simulation
+        .tracks
+        .iter()
+        .map(|t| t.displacement(t.cbtmin_before(end)).hours() - clock_moved_h)
+        .map(|hours| PhaseShift::earlier_by(hours).hours())
+        .collect();
+    let displaced_sleep: Vec<f64> = simulation
+        .tracks
+        .iter()
+        .filter_map(|track| phase_displacement_h(track, end))
         .collect();
     Some(WindowEstimate {
         start,
@@ -230,22 +275,60 @@ fn window(
         short_24h: count(&in_24h, |h| h < criteria.sleep.short_24h_below.value),
         short_48h: count(&in_48h, |h| h < criteria.sleep.short_48h_below.value),
         members: simulation.tracks.len(),
-        phase_displacement_h: over(simulation, |t| phase_displacement_h(t, end))?.0,
-        cbtmin_displacement_h: over(simulation, |t| t.earlier_h(t.cbtmin_before(end)))?.0,
+        phase_displacement_h: circular_quantiles(&displaced_sleep, 24.0, -12.0),
+        cbtmin_displacement_h: spread(
+            simulation,
+            &displacements,
+            Circle {
+                period: 24.0,
+                low: -12.0,
+            },
+            criteria.evidence.cases_apart.value,
+        )?,
         quiescent_awake_excess_h: quantiles(&excess)?,
     })
 }
 
-/// Phase angle of the last main sleep before `end` minus the habitual one, in (-12, 12].
+/// A circle on which values are summarised.
+#[derive(Debug, Clone, Copy)]
+struct Circle {
+    period: f64,
+    /// Lowest median that is written.
+    low: f64,
+}
+
+/// A circular quantity, one value per member, with the two daylight cases where they are further apart than `apart`.
+fn spread(simulation: &Simulation, values: &[f64], circle: Circle, apart: f64) -> Option<Spread> {
+    let of = |seen: Option<bool>| {
+        let values: Vec<f64> = simulation
+            .tracks
+            .iter()
+            .zip(values)
+            .filter(|(t, _)| seen.is_none_or(|s| t.member.sees_morning_daylight == s))
+            .map(|(_, value)| *value)
+            .collect();
+        circular_quantiles(&values, circle.period, circle.low)
+    };
+    let cases = of(Some(true))
+        .zip(of(Some(false)))
+        .map(<[Quantiles; 2]>::from);
+    Some(Spread {
+        all: of(None)?,
+        cases: cases.filter(|[seen, kept_out]| {
+            wrap_half(seen.median - kept_out.median, circle.period).abs() > apart
+        }),
+    })
+}
+
+/// Phase angle of the last main sleep before `end` minus the habitual one, in (-12, 12]; `None` without any sleep.
 ///
 /// The main sleep is the longest of the last 24 h.
-fn phase_displacement_h(track: &MemberTrack, end: Minute) -> f64 {
-    track.main_sleep(end + -1440, end).map_or(0.0, |sleep| {
-        crate::numeric::circular::wrap_half(
-            track.phase_angle_h(sleep) - track.habitual_phase_angle_h(),
-            24.0,
-        )
-    })
+fn phase_displacement_h(track: &MemberTrack, end: Minute) -> Option<f64> {
+    let sleep = track.main_sleep(end + -1440, end)?;
+    Some(wrap_half(
+        track.phase_angle_h(sleep) - track.habitual_phase_angle_h(),
+        24.0,
+    ))
 }
 
 /// The reference quiescent interval laid on each `CBTmin` of a member.
@@ -259,60 +342,51 @@ fn laid_intervals(
         .iter()
         .map(move |cbtmin| {
             (
-                whole(cbtmin + reference.from_min),
-                whole(cbtmin + reference.to_min),
+                Minute::nearest(cbtmin + reference.from_min),
+                Minute::nearest(cbtmin + reference.to_min),
             )
         })
 }
 
-/// Hours awake in the intervals of the `CBTmin`s of the last 24 h before `end`, minus the habitual hours.
+/// Hours awake in the interval of the last `CBTmin` before `end`, minus the habitual hours.
 fn quiescent_awake_excess_h(simulation: &Simulation, member: usize, end: Minute) -> f64 {
     let track = &simulation.tracks[member];
     let reference = &simulation.habitual[member];
-    laid_intervals(simulation, member)
-        .zip(&track.cbtmin_min)
-        .filter(|(_, cbtmin)| ((end + -1440).as_f64()..end.as_f64()).contains(*cbtmin))
-        .map(|((from, to), _)| {
-            let to = to.min(end);
-            let asleep: i64 = track.sleeps.iter().map(|s| s.inside(from, to)).sum();
-            (Minute(to - from - asleep).as_f64() - reference.awake_min) / 60.0
-        })
-        .sum()
+    let cbtmin = track.cbtmin_before(end);
+    let from = Minute::nearest(cbtmin + reference.from_min);
+    let to = Minute::nearest(cbtmin + reference.to_min).min(end);
+    let asleep: i64 = track.sleeps.iter().map(|s| s.inside(from, to)).sum();
+    (Minute(to - from - asleep).as_f64() - reference.awake_min) / 60.0
 }
 
-fn days(simulation: &Simulation, axis: &Axis) -> Vec<DayEstimate> {
-    let cycles = cycles(simulation);
+fn days(simulation: &Simulation, axis: &Axis, criteria: &Criteria) -> Vec<DayEstimate> {
+    let cycles = cycles(simulation, criteria);
     let earlier = simulation.melatonin.onset_before_cbtmin_min;
     let onsets: Vec<CbtminEstimate> = cycles
         .iter()
         .map(|cycle| CbtminEstimate {
-            minute: Quantiles {
-                median: cycle.minute.median - earlier,
-                p05: cycle.minute.p05 - earlier,
-                p95: cycle.minute.p95 - earlier,
-            },
+            minute: cycle.minute.moved(-earlier),
             ..*cycle
         })
         .collect();
-    axis.days
-        .iter()
-        .zip(&simulation.days)
-        // The axis begins with the day before the first date.
-        .skip(1)
+    // The axis begins with the day before the first date; dates after the last start are not the roster's.
+    let dates = axis.days.iter().zip(&simulation.days).skip(1);
+    dates
+        .take(axis.rostered_dates().len())
         .filter_map(|(day, members)| {
             let inside = |cycle: &&CbtminEstimate| {
                 (day.start.as_f64()..day.end.as_f64()).contains(&cycle.minute.median)
             };
             Some(DayEstimate {
-                dlmo: onsets.iter().filter(inside).copied().collect(),
                 date: day.date,
                 start: day.start,
                 cbtmin: cycles.iter().filter(inside).copied().collect(),
+                dlmo: onsets.iter().filter(inside).copied().collect(),
                 sleep_h: over(simulation, |track| {
                     sleep_ending_in(track, day.start, day.end)
                 })?
                 .0,
-                cortisol: cortisol(simulation, members, day.start)?,
+                cortisol: cortisol(simulation, members, day.start, criteria)?,
             })
         })
         .collect()
@@ -327,8 +401,8 @@ fn sleep_ending_in(track: &MemberTrack, from: Minute, to: Minute) -> f64 {
         .sum()
 }
 
-/// `CBTmin` by cycle over the members; two cases where morning daylight seen or kept out makes more than an hour.
-fn cycles(simulation: &Simulation) -> Vec<CbtminEstimate> {
+/// `CBTmin` by cycle over the members; two entries where morning daylight seen or kept out makes more than the limit.
+fn cycles(simulation: &Simulation, criteria: &Criteria) -> Vec<CbtminEstimate> {
     // Every track begins with the same number of remembered habitual days.
     let remembered = usize::try_from(REMEMBERED_DAYS).unwrap_or(0) + 1;
     let longest = simulation
@@ -337,36 +411,57 @@ fn cycles(simulation: &Simulation) -> Vec<CbtminEstimate> {
         .map(|track| track.cbtmin_min.len())
         .max()
         .unwrap_or(0);
+    let apart = criteria.evidence.cases_apart.value * 60.0;
     (remembered..longest)
         .flat_map(|cycle| {
-            let of = |seen: Option<bool>| {
-                let values: Vec<f64> = simulation
-                    .tracks
-                    .iter()
-                    .filter(|t| seen.is_none_or(|s| t.member.sees_morning_daylight == s))
-                    .filter_map(|track| track.cbtmin_min.get(cycle).copied())
-                    .collect();
-                quantiles(&values).map(|minute| CbtminEstimate {
-                    minute,
-                    daylight_seen: seen,
-                })
-            };
-            match (of(Some(true)), of(Some(false))) {
+            let seen = cycle_of(simulation, cycle, Some(true));
+            let kept_out = cycle_of(simulation, cycle, Some(false));
+            match (seen, kept_out) {
                 (Some(seen), Some(kept_out))
-                    if (seen.minute.median - kept_out.minute.median).abs() > CASES_APART_MIN =>
+                    if (seen.minute.median - kept_out.minute.median).abs() > apart =>
                 {
                     vec![seen, kept_out]
                 }
-                _ => of(None).into_iter().collect(),
+                _ => cycle_of(simulation, cycle, None).into_iter().collect(),
             }
         })
         .collect()
+}
+
+/// One cycle of the members of a daylight case.
+///
+/// Members who went round the clock in opposite directions are up to a day apart at the same hour of the clock:
+/// the hours are summarised on the circle, and the instant is the one nearest to the median of the instants.
+fn cycle_of(
+    simulation: &Simulation,
+    cycle: usize,
+    daylight_seen: Option<bool>,
+) -> Option<CbtminEstimate> {
+    let case: Vec<&MemberTrack> = simulation
+        .tracks
+        .iter()
+        .filter(|t| daylight_seen.is_none_or(|s| t.member.sees_morning_daylight == s))
+        .collect();
+    let minutes: Vec<f64> = case
+        .iter()
+        .filter_map(|track| track.cbtmin_min.get(cycle).copied())
+        .collect();
+    // A marker that most members have not reached would be that of the early ones only.
+    if minutes.len() * 2 <= case.len() {
+        return None;
+    }
+    let middle = quantiles(&minutes)?.median;
+    Some(CbtminEstimate {
+        minute: circular_quantiles(&minutes, 1440.0, middle - 720.0)?,
+        daylight_seen,
+    })
 }
 
 fn cortisol(
     simulation: &Simulation,
     members: &[CortisolDay],
     day_start: Minute,
+    criteria: &Criteria,
 ) -> Option<CortisolEstimate> {
     let of =
         |value: fn(&CortisolDay) -> f64| quantiles(&members.iter().map(value).collect::<Vec<_>>());
@@ -375,41 +470,26 @@ fn cortisol(
         .zip(&simulation.habitual)
         .map(|(day, habitual)| day.amplitude / habitual.day.amplitude)
         .collect();
-    let acrophases: Vec<f64> = members.iter().map(|day| day.acrophase_min).collect();
-    let anchor = crate::numeric::circular::mean(&acrophases, 1440.0);
-    let near: Vec<f64> = crate::numeric::circular::unwrap_near(&acrophases, anchor, 1440.0)
-        .into_iter()
-        .map(|minute| minute + day_start.as_f64())
-        .collect();
+    // Clock times are spread on a circle; the median is put on the date.
+    let circle = Circle {
+        period: 1440.0,
+        low: day_start.as_f64(),
+    };
+    let apart = criteria.evidence.cases_apart.value * 60.0;
+    let at = |value: &dyn Fn(&CortisolDay) -> f64| {
+        let minutes: Vec<f64> = members.iter().map(value).collect();
+        spread(simulation, &minutes, circle, apart)
+    };
     Some(CortisolEstimate {
         mesor: of(|d| d.mesor)?,
         amplitude: of(|d| d.amplitude)?,
         amplitude_ratio: quantiles(&ratios)?,
-        acrophase_at: quantiles(&near)?,
+        acrophase_at: at(&|d| d.acrophase_min + day_start.as_f64())?,
         peak: of(|d| d.peak)?,
-        peak_at: of(|d| d.peak_at.as_f64())?,
+        peak_at: at(&|d| d.peak_at.as_f64())?,
         nadir: of(|d| d.nadir)?,
-        nadir_at: of(|d| d.nadir_at.as_f64())?,
-        quiescent_start: of(|d| d.quiescent.0.as_f64())?,
-        quiescent_end: of(|d| d.quiescent.1.as_f64())?,
+        nadir_at: at(&|d| d.nadir_at.as_f64())?,
+        quiescent_start: at(&|d| d.quiescent.0.as_f64())?,
+        quiescent_end: at(&|d| d.quiescent.1.as_f64())?,
     })
-}
-
-fn habitual(simulation: &Simulation) -> Option<HabitualEstimate> {
-    let of = |value: fn(&crate::physiology::QuiescentReference) -> f64| {
-        quantiles(&simulation.habitual.iter().map(value).collect::<Vec<_>>())
-    };
-    Some(HabitualEstimate {
-        cbtmin_clock_min: over(simulation, |t| t.habitual_cbtmin_min + 1440.0)?.0,
-        quiescent_from_h: of(|h| h.from_min / 60.0)?,
-        quiescent_to_h: of(|h| h.to_min / 60.0)?,
-    })
-}
-
-#[expect(
-    clippy::cast_possible_truncation,
-    reason = "minutes of a roster fit an i64 by far"
-)]
-fn whole(minute: f64) -> Minute {
-    Minute(minute.round() as i64)
 }

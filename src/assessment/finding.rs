@@ -1,5 +1,6 @@
 //! Findings: what a person should look at, why, and how much.
 
+use super::pack::Comparison;
 use crate::roster::{LineId, WorkerId};
 use crate::source::OriginId;
 use crate::units::Minute;
@@ -159,6 +160,36 @@ pub struct MembersHold {
     pub of: usize,
 }
 
+/// A rule that is not met.
+#[derive(Debug, Clone, PartialEq)]
+pub struct BrokenRule {
+    /// Its id.
+    pub id: String,
+    /// Law or advice.
+    pub is_law: bool,
+    /// Met only within a derogation.
+    pub within_floor: bool,
+    /// Name of its metric.
+    pub metric: String,
+    /// Which side of the limit is in order.
+    pub op: Comparison,
+    /// Limit.
+    pub limit: f64,
+    /// Unit of the limit.
+    pub unit: String,
+}
+
+/// One place of a finding.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Occurrence {
+    /// First minute concerned.
+    pub start: Minute,
+    /// First minute after it.
+    pub end: Minute,
+    /// Measured value, worst of the rules.
+    pub measured: f64,
+}
+
 /// One finding.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Finding {
@@ -182,14 +213,14 @@ pub struct Finding {
     pub unit: String,
     /// Members in which it holds, for model findings.
     pub members: Option<MembersHold>,
-    /// Rules concerned, each once.
-    pub rules: Vec<String>,
+    /// Rules concerned, each once: law first, then by id.
+    pub rules: Vec<BrokenRule>,
     /// Sources with their marks.
     pub source: String,
     /// Rows of the input that caused it.
     pub rows: Vec<OriginId>,
-    /// How often it occurs.
-    pub occurrences: usize,
+    /// Where it occurs, ascending in time.
+    pub occurrences: Vec<Occurrence>,
     /// What is missing, for rules that could not be judged; which derogation, for law within a floor.
     pub remark: Option<String>,
     /// The model behind it rests on an assumed history.

@@ -160,6 +160,8 @@ pub struct Pack {
     pub reading: String,
     /// In which state it was seen.
     pub as_seen: String,
+    /// Rules of the same documents that this version does not measure.
+    pub left_out: Vec<String>,
     /// When a duty counts as a night duty here; never mixed between packs.
     pub night: NightDefinition,
     /// Its rules.

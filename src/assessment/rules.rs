@@ -15,7 +15,7 @@ mod run_nights;
 use super::clock_window::ClockWindow;
 use super::criteria::Criteria;
 use super::duties::{Duty, WorkerDuties};
-use super::pack::{Pack, Rule, RuleClass};
+use super::pack::{Comparison, Pack, Rule, RuleClass};
 use crate::roster::Roster;
 use crate::timeline::Axis;
 use crate::units::Minute;
@@ -71,8 +71,12 @@ pub struct Outcome {
     pub limit: f64,
     /// Unit of both.
     pub unit: String,
+    /// Which side of the limit is in order.
+    pub op: Comparison,
     /// Instrument, article, tier.
     pub citation: String,
+    /// Derogations that the instrument knows.
+    pub derogations: Vec<String>,
     /// What follows.
     pub verdict: Verdict,
     /// Window, for rules measured on a gap.
@@ -265,7 +269,9 @@ fn outcome(pack: &Pack, rule: &Rule, measure: Measure, declared: &Declared) -> O
         value: measure.value,
         limit: rule.value,
         unit: rule.unit.clone(),
+        op: rule.op,
         citation: rule.citation(),
+        derogations: rule.derogations.clone(),
         verdict,
         window: measure.window,
         start: measure.start,

@@ -105,16 +105,22 @@ impl RecoveryWindow {
         self.end.hours_since(self.start)
     }
 
-    /// Does the class rest on the model alone?
-    pub fn is_model_only(&self) -> bool {
-        !self.reasons.is_empty() && self.reasons.iter().all(Reason::is_model)
+    /// Is it compressed by law or by its length, whatever the model says?
+    pub fn is_compressed_by_rest(&self) -> bool {
+        let rest: Vec<&Reason> = self.reasons.iter().filter(|r| !r.is_model()).collect();
+        class(&rest) == WindowClass::Compressed
+    }
+
+    /// Would the class be another one if the model were asked in spite of an assumed history?
+    pub fn is_set_aside(&self) -> bool {
+        self.history_assumed
+            && !matches!(self.class, WindowClass::NotJudged | WindowClass::Listed)
+            && class(&self.reasons.iter().collect::<Vec<_>>()) != self.class
     }
 
     /// Does the window count in shares?
     pub fn in_shares(&self) -> bool {
-        let counted = !matches!(self.class, WindowClass::NotJudged | WindowClass::Listed);
-        let assumed = self.history_assumed && self.is_model_only();
-        counted && !assumed
+        !matches!(self.class, WindowClass::NotJudged | WindowClass::Listed)
     }
 
     /// Is a rule of law not met?
@@ -181,13 +187,19 @@ fn window(input: &WindowInput<'_>, after: usize, start: Minute, end: Minute) -> 
     } else if hours > input.criteria.rest.listed_above.value {
         window.class = WindowClass::Listed;
     } else {
-        window.reasons = reasons(input, after, hours);
-        window.class = class(&window.reasons);
+        window.reasons = reasons(input, after, hours, interrupted);
+        // An assumed history sets no class: the model's reasons are told in a note, on the line.
+        let counted: Vec<&Reason> = window
+            .reasons
+            .iter()
+            .filter(|reason| !(window.history_assumed && reason.is_model()))
+            .collect();
+        window.class = class(&counted);
     }
     window
 }
 
-fn reasons(input: &WindowInput<'_>, after: usize, hours: f64) -> Vec<Reason> {
+fn reasons(input: &WindowInput<'_>, after: usize, hours: f64, interrupted: bool) -> Vec<Reason> {
     let mut reasons = Vec::new();
     if hours < input.criteria.rest.compressed_below.value {
         reasons.push(Reason::GapBelowLimit);
@@ -203,7 +215,9 @@ fn reasons(input: &WindowInput<'_>, after: usize, hours: f64) -> Vec<Reason> {
             (Verdict::Met | Verdict::NotJudged(_), _) => {}
         }
     }
-    if let Some(shares) = input.sleep.get(after) {
+    // Standby or sleep-in inside leaves it open how much sleep there was.
+    let sleep = input.sleep.get(after).filter(|_| !interrupted);
+    if let Some(shares) = sleep {
         let sleep = &input.criteria.sleep;
         if shares.k24 >= sleep.short_from_share.value {
             reasons.push(Reason::SleepShort);
@@ -218,7 +232,7 @@ fn reasons(input: &WindowInput<'_>, after: usize, hours: f64) -> Vec<Reason> {
     reasons
 }
 
-fn class(reasons: &[Reason]) -> WindowClass {
+fn class(reasons: &[&Reason]) -> WindowClass {
     let compressed = reasons.iter().any(|reason| {
         matches!(
             reason,

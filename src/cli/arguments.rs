@@ -50,6 +50,8 @@ pub(crate) struct ScreenOptions {
     pub(crate) site: Option<PathBuf>,
 
     /// Rule packs, separated by commas [default: eu-wtd,adv-nordic].
+    ///
+    /// Law: uk-wtr (Great Britain), eu-wtd (EU minimum). Advice: adv-nordic, adv-review, adv-hse.
     #[arg(long, value_name = "PACK,...", value_delimiter = ',')]
     pub(crate) rules: Vec<String>,
 

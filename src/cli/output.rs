@@ -1,15 +1,11 @@
 //! The only place that prints or writes files.
-#![expect(
-    clippy::print_stderr,
-    reason = "messages of the binary go to standard error, and only from here"
-)]
 
 use super::Stop;
 use acroshift::render::{csv, html, json};
-use acroshift::report::ScreenReport;
+use acroshift::report::{Audience, ScreenReport};
 use anyhow::Context;
 use std::fs::{self, DirBuilder, File, OpenOptions};
-use std::io::{self, BufWriter, StderrLock, StdoutLock, Write};
+use std::io::{self, BufWriter, StdoutLock, Write};
 use std::path::{Path, PathBuf};
 
 /// Standard output, for results.
@@ -17,14 +13,9 @@ pub(super) fn results() -> BufWriter<StdoutLock<'static>> {
     BufWriter::new(io::stdout().lock())
 }
 
-/// Standard error, for messages.
-pub(super) fn messages() -> StderrLock<'static> {
-    io::stderr().lock()
-}
-
-/// One message on standard error.
-pub(super) fn tell(text: &str) {
-    eprintln!("{text}");
+/// Messages on standard error. Where nobody can read them the work goes on: the exit code tells.
+pub(super) fn tell(text: &[u8]) {
+    let _ = io::stderr().lock().write_all(text);
 }
 
 /// Did the reader of our output go away?
@@ -40,11 +31,24 @@ pub(super) fn is_broken_pipe(error: &anyhow::Error) -> bool {
 }
 
 /// An existing folder with files in it is not touched without `--force`.
-pub(super) fn check_folder(folder: &Path, force: bool) -> Result<(), Stop> {
+pub(super) fn check_folder(folder: &Path, force: bool, audience: Audience) -> Result<(), Stop> {
+    if folder.file_name().is_none() {
+        return Err(Stop::usage(format!(
+            "{} is no name for a new folder",
+            folder.display()
+        )));
+    }
     if folder.exists() && !folder.is_dir() {
         return Err(Stop::usage(format!(
             "{} is a file; name a folder",
             folder.display()
+        )));
+    }
+    if holds_other_audience(folder, audience) {
+        return Err(Stop::usage(format!(
+            "{} holds a report for another audience; a {} report is not written there, not even with --force; give another --out",
+            folder.display(),
+            audience.word()
         )));
     }
     let filled = fs::read_dir(folder).is_ok_and(|mut entries| entries.next().is_some());
@@ -55,6 +59,17 @@ pub(super) fn check_folder(folder: &Path, force: bool) -> Result<(), Stop> {
         )));
     }
     Ok(())
+}
+
+/// Does the folder hold a result that was made for somebody else?
+fn holds_other_audience(folder: &Path, audience: Audience) -> bool {
+    let Ok(text) = fs::read_to_string(folder.join("result.json")) else {
+        return false;
+    };
+    serde_json::from_str::<serde_json::Value>(&text)
+        .ok()
+        .and_then(|result| Some(result["run"]["audience"].as_str()? != audience.word()))
+        .unwrap_or(false)
 }
 
 /// Writes every file of a report into a folder beside the target first, so that nothing half-written bears its final name.

@@ -12,6 +12,7 @@ use acroshift::source::Origin;
 use acroshift::{Screening, screen};
 use anyhow::Context;
 use sha2::{Digest, Sha256};
+use std::collections::BTreeSet;
 use std::fmt::Write as _;
 use std::io::{Read, Write};
 use std::path::Path;
@@ -21,31 +22,32 @@ pub(super) fn run(options: &ScreenOptions) -> Result<Ending, Stop> {
     use_threads(options)?;
     let site = read_site(options)?;
     let packs = packs(options, &site)?;
+    check_derogations(&site, &packs)?;
     let reading = reading(options, &site)?;
     if let Some(folder) = &options.out {
-        output::check_folder(folder, options.force)?;
+        output::check_folder(folder, options.force, audience(options))?;
     }
     let files = read_files(options);
+    // Files that could not be read have no place among the inputs, here as in the intake.
     let hashes: Vec<(String, String)> = files
         .iter()
+        .filter(|file| file.refused.is_none())
         .map(|file| (file.name.clone(), sha256(&file.bytes)))
         .collect();
     let read = read_rosters(&files, &reading);
     let rows = diagnostics::rows(&read.diagnostics);
     let unusable = has_errors(&read.diagnostics) && !options.allow_partial;
-    let mut messages = output::messages();
     // Notes are told in the report; on the terminal only what asks for a decision.
     let urgent: Vec<_> = rows
         .iter()
         .filter(|row| row.level != "note")
         .cloned()
         .collect();
+    let mut messages = Vec::new();
     terminal::write_diagnostics(&urgent, &mut messages).context("writing messages")?;
+    output::tell(&messages);
     let screening = Screening {
-        audience: match options.audience {
-            AudienceName::Planner => Audience::Planner,
-            AudienceName::Clinician => Audience::Clinician,
-        },
+        audience: audience(options),
         packs,
         site,
         members: usize::from(options.members),
@@ -56,8 +58,14 @@ pub(super) fn run(options: &ScreenOptions) -> Result<Ending, Stop> {
     let Some(report) = report else {
         return Err(cannot_screen(&read));
     };
-    drop(messages);
     hand_over(options, &report)
+}
+
+fn audience(options: &ScreenOptions) -> Audience {
+    match options.audience {
+        AudienceName::Planner => Audience::Planner,
+        AudienceName::Clinician => Audience::Clinician,
+    }
 }
 
 fn cannot_screen(read: &Intake) -> Stop {
@@ -139,6 +147,26 @@ fn packs(options: &ScreenOptions, site: &Site) -> Result<Vec<Pack>, Stop> {
             .collect(),
     };
     pack::named(&names).map_err(Stop::usage)
+}
+
+/// A derogation that no chosen pack knows would be a declaration without effect.
+fn check_derogations(site: &Site, packs: &[Pack]) -> Result<(), Stop> {
+    let known: BTreeSet<&str> = packs
+        .iter()
+        .flat_map(|pack| &pack.rules)
+        .flat_map(|rule| rule.derogations.iter().map(String::as_str))
+        .collect();
+    let unknown = site
+        .derogations
+        .iter()
+        .find(|id| !known.contains(id.as_str()));
+    match unknown {
+        None => Ok(()),
+        Some(id) => Err(Stop::usage(format!(
+            "site file: derogation {id:?} is in no chosen pack; known: {}",
+            known.into_iter().collect::<Vec<_>>().join(", ")
+        ))),
+    }
 }
 
 fn reading(options: &ScreenOptions, site: &Site) -> Result<Reading, Stop> {

@@ -49,10 +49,13 @@ codes! {
     CrossesClockChange "T08" "crosses-clock-change" Note "the shift crosses a clock change; its length is elapsed time";
     NoZone "T10" "no-time-zone" Error "no time zone is given in the file or by --zone";
     UnknownZone "T11" "unknown-time-zone" Error "the time zone is not a name of the IANA time zone database";
+    SeveralZones "T12" "several-zones" Warning "rows name several time zones; dates and clock windows are read in that of most rows";
     SkippedDate "T13" "skipped-date" Error "the local calendar of the zone has no such date";
     UnreadableTime "T17" "unreadable-time" Error "the text is not a time of day that can be read";
     EndBeforeStartDated "T21" "end-before-start-dated" Error "the end date-time lies before the start date-time";
     UnreadableDate "D09" "unreadable-date" Error "the text is not a date that can be read";
+    SpanTooLong "D10" "span-too-long" Fatal "the rows span more than twenty years, which is a slip in a year";
+    NothingInRange "D11" "nothing-in-range" Fatal "no shift lies between the first and the last date asked for";
     UnsortedRows "D05" "unsorted-rows" Note "rows are not in order of time; they are sorted";
     FirstRestUnknown "D08" "first-rest-unknown" Warning "no shifts before the first day are known, so the rest before it is not judged";
     ByteOrderMark "C01" "byte-order-mark" Note "a byte-order mark was removed";
@@ -72,6 +75,7 @@ codes! {
     UnknownKind "K21" "unknown-kind" Error "the kind of duty is not one the program knows";
     MissingWorker "K15" "missing-worker" Error "the row has no worker";
     BadBreak "K20" "break-too-long" Error "the break is no number of minutes shorter than the shift";
+    BadCommute "K22" "commute-unreadable" Error "the commute is no number of minutes up to 240";
     Unsupported "X10" "unsupported-format" Fatal "the format of the file is not supported";
     SeveralTables "X09" "several-tables" Fatal "the workbook has several sheets with data";
     Unreadable "F01" "unreadable-file" Fatal "the file cannot be read";

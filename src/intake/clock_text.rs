@@ -31,7 +31,12 @@ pub fn date(text: &str) -> Option<NaiveDate> {
             }
         })
         .ok()
-        .filter(|date| (1900..=2200).contains(&chrono::Datelike::year(date)))
+        .filter(|date| in_range(*date))
+}
+
+/// Years that rosters have.
+fn in_range(date: NaiveDate) -> bool {
+    (1900..=2200).contains(&chrono::Datelike::year(&date))
 }
 
 /// A time of day: `22:00`, `22:00:00`, `2200`, `7:30`, `24:00`.
@@ -70,7 +75,7 @@ pub fn time(text: &str) -> Option<DayTime> {
 pub fn moment(text: &str) -> Option<Moment> {
     let text = text.trim();
     if let Ok(fixed) = DateTime::parse_from_rfc3339(&with_seconds(text)) {
-        return Some(Moment::Fixed(fixed));
+        return in_range(fixed.date_naive()).then_some(Moment::Fixed(fixed));
     }
     let (day, clock) = text.split_once(['T', 't', ' '])?;
     Some(Moment::Local(date(day.trim())?, time(clock.trim())?))

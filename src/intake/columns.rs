@@ -1,7 +1,7 @@
 //! Which column of a long table means what?
 
-use super::Reading;
 use super::table::{Row, Table};
+use super::{Reading, clock_text};
 use crate::diagnostic::{Code, Diagnostic, Level};
 
 /// Meanings of columns and the words that files use for them. Common practice, no source.
@@ -48,6 +48,36 @@ impl Columns {
             .iter()
             .find(|(column, _)| *column == wanted)
             .map(|(_, place)| *place)
+    }
+
+    /// Start and end that hold times of day only need a date beside them.
+    pub(super) fn times_have_dates(
+        &self,
+        table: &Table,
+        diagnostics: &mut Vec<Diagnostic>,
+    ) -> bool {
+        let cell = |row| self.cell(row, Column::Start);
+        let only_times = table
+            .rows
+            .iter()
+            .filter_map(cell)
+            .take(10)
+            .all(|(text, _)| clock_text::time(text).is_some());
+        if self.place(Column::Date).is_some()
+            || !only_times
+            || table.rows.iter().all(|row| cell(row).is_none())
+        {
+            return true;
+        }
+        diagnostics.push(Diagnostic::new(
+            Code::MissingColumn,
+            table.origin(&table.header, 0),
+            format!(
+                "no column date: start holds times of day only; found {}; name the column with the day date",
+                table.header.cells.join(", ")
+            ),
+        ));
+        false
     }
 
     /// The cell of a column, unless it is blank.
@@ -97,15 +127,47 @@ impl Columns {
             .at(Level::Fatal),
         );
         }
-        if !unused.is_empty() {
-            diagnostics.push(Diagnostic::new(
-                Code::UnusedColumns,
-                table.origin(&table.header, 0),
-                format!("columns left out: {}", unused.join(", ")),
-            ));
-        }
+        tell_unused(table, &unused, diagnostics);
         usable.then_some(columns)
     }
+}
+
+/// Columns that are left out; a name close to a known one is more than a note.
+fn tell_unused(table: &Table, unused: &[String], diagnostics: &mut Vec<Diagnostic>) {
+    let mut near_any = false;
+    let said: Vec<String> = unused
+        .iter()
+        .map(|title| match near_word(title) {
+            Some(word) => {
+                near_any = true;
+                format!("{title} (did you mean {word}?)")
+            }
+            None => title.clone(),
+        })
+        .collect();
+    if said.is_empty() {
+        return;
+    }
+    let level = if near_any {
+        Level::Warning
+    } else {
+        Level::Note
+    };
+    let origin = table.origin(&table.header, 0);
+    let message = format!("columns left out: {}", said.join(", "));
+    diagnostics.push(Diagnostic::new(Code::UnusedColumns, origin, message).at(level));
+}
+
+/// The known word that a title is probably a slip of.
+fn near_word(title: &str) -> Option<&'static str> {
+    let word = title.to_lowercase().replace([' ', '-'], "_");
+    COLUMNS
+        .iter()
+        .flat_map(|(_, words)| words.iter().copied())
+        .map(|known| (strsim::damerau_levenshtein(known, &word), known))
+        .filter(|(distance, known)| *distance <= 2 && known.len() > 2 * distance)
+        .min()
+        .map(|(_, known)| known)
 }
 
 fn needed_columns(
@@ -126,7 +188,7 @@ fn needed_columns(
             let near = unused
                 .iter()
                 .find(|title| strsim::damerau_levenshtein(&title.to_lowercase(), name) <= 2)
-                .map(|title| format!("; did you mean {title:?}?"))
+                .map(|title| format!("; rename {title:?} to {name}"))
                 .unwrap_or_default();
             diagnostics.push(Diagnostic::new(
                 Code::MissingColumn,

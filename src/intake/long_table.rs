@@ -46,8 +46,8 @@ pub struct RowShift {
 pub struct LostRow {
     /// Worker as written.
     pub worker: String,
-    /// First and last date that the row names, if they can be read.
-    pub dates: Option<(NaiveDate, NaiveDate)>,
+    /// First and last date around each end that the row names; none when no date can be read.
+    pub dates: Vec<(NaiveDate, NaiveDate)>,
 }
 
 /// What one table holds.
@@ -70,6 +70,9 @@ pub fn read(
     let Some(columns) = Columns::find(table, reading, diagnostics) else {
         return rows;
     };
+    if !columns.times_have_dates(table, diagnostics) {
+        return rows;
+    }
     for row in &table.rows {
         let mut reader = RowReader {
             table,
@@ -78,6 +81,9 @@ pub fn read(
             reading,
             diagnostics,
         };
+        if reader.is_day_off_without_times() {
+            continue;
+        }
         match reader.shift(file) {
             Some(shift) => rows.shifts.push(shift),
             None => rows.lost.extend(reader.lost()),
@@ -129,7 +135,10 @@ impl RowReader<'_> {
         let (start, end) = self.times(zone?)?;
         let (start_at, end_at) = (start.at, end.at);
         let break_min = self.checked_break(break_min?, end_at - start_at)?;
-        self.tell_length(start_at, end_at, zone?)?;
+        // Leave and absence may last for weeks.
+        if kind.is_none_or(|kind| kind.counts() || kind.interrupts()) {
+            self.tell_length(start_at, end_at, zone?)?;
+        }
         let text = |column| {
             self.columns
                 .cell(self.row, column)
@@ -154,22 +163,35 @@ impl RowReader<'_> {
         })
     }
 
+    /// Leave, absence or rest without times of day: no duty, and nothing to read.
+    fn is_day_off_without_times(&self) -> bool {
+        let kind = self
+            .columns
+            .cell(self.row, Column::Kind)
+            .and_then(|(word, _)| DutyKind::named(word));
+        let off = kind.is_some_and(|kind| !kind.counts() && !kind.interrupts());
+        let whole_date = |column| match self.columns.cell(self.row, column) {
+            None => true,
+            Some((text, _)) => clock_text::date(text).is_some(),
+        };
+        off && whole_date(Column::Start) && whole_date(Column::End)
+    }
+
     /// What is known of a row that is not used.
     fn lost(&self) -> Option<LostRow> {
         let (worker, _) = self.columns.cell(self.row, Column::Worker)?;
-        let dates: Vec<NaiveDate> = [Column::Date, Column::Start, Column::End]
+        let named: Vec<NaiveDate> = [Column::Date, Column::Start, Column::End]
             .into_iter()
             .filter_map(|column| self.columns.cell(self.row, column))
-            .filter_map(|(text, _)| clock_text::date(text.get(..10).unwrap_or(text)))
+            .filter_map(|(text, _)| clock_text::date(text.split(['T', 't', ' ']).next()?))
             .collect();
-        let first = dates.iter().min().copied();
-        let last = dates.iter().max().copied();
         Some(LostRow {
             worker: worker.to_owned(),
             // A night that begins on the date reaches into the next one.
-            dates: first
-                .zip(last)
-                .map(|(first, last)| (first, last.succ_opt().unwrap_or(last))),
+            dates: named
+                .into_iter()
+                .map(|date| (date, date.succ_opt().unwrap_or(date)))
+                .collect(),
         })
     }
 
@@ -256,11 +278,16 @@ impl RowReader<'_> {
         let Some((text, place)) = self.columns.cell(self.row, column) else {
             return Some(None);
         };
-        let minutes = text.parse::<u16>().ok();
+        let (code, longest) = match column {
+            Column::Commute => (Code::BadCommute, 240),
+            _ => (Code::BadBreak, u16::MAX),
+        };
+        let minutes = text.parse::<u16>().ok().filter(|m| *m <= longest);
         if minutes.is_none() {
             let text = short(text);
-            let message = format!("{text:?} is no whole number of minutes; row not used");
-            self.tell(Code::BadBreak, place, message);
+            let message =
+                format!("{text:?} is no whole number of minutes that can be used; row not used");
+            self.tell(code, place, message);
         }
         minutes.map(Some)
     }
@@ -293,17 +320,21 @@ impl RowReader<'_> {
         let start = self.moment(Column::Start, day);
         let end = self.moment(Column::End, day);
         let (start, end) = (start?, end?);
+        self.tell_twenty_four(&start, Level::Warning);
+        self.tell_twenty_four(&end, Level::Note);
+        let one_date = matches!(day, Day::Read(_));
+        let (end, moved) = end.on_the_next_date_if_before(&start, one_date);
         let start_at = self.instant(&start, zone);
         let end_at = self.instant(&end, zone);
-        let (start_at, mut end_at) = (start_at?, end_at?);
-        if day.flatten_day().is_some() {
-            end_at = self.next_day_if_before(&end, start_at, end_at, zone)?;
+        let (start_at, end_at) = (start_at?, end_at?);
+        if moved {
+            self.tell_next_day(end.column, end_at - start_at);
         }
-        let written = |moment: &Written| self.row.cells[moment.column].clone();
+        let written = |moment: &Written| short(&self.row.cells[moment.column]);
         if end_at == start_at {
             let message = format!(
-                "start equals end ({}): 0 h and 24 h cannot be told apart; row not used; write 24:00 or give two dates",
-                short(&written(&start))
+                "start equals end ({}): 0 h and 24 h cannot be told apart; row not used; write the end as 24:00 or give two dates",
+                written(&start)
             );
             self.tell(Code::StartEqualsEnd, end.column, message);
             return None;
@@ -311,8 +342,8 @@ impl RowReader<'_> {
         if end_at < start_at {
             let message = format!(
                 "end {} lies before start {}; row not used",
-                short(&written(&end)),
-                short(&written(&start))
+                written(&end),
+                written(&start)
             );
             self.tell(Code::EndBeforeStartDated, end.column, message);
             return None;
@@ -327,6 +358,33 @@ impl RowReader<'_> {
                 column: end.column,
             },
         ))
+    }
+
+    fn tell_twenty_four(&mut self, written: &Written, level: Level) {
+        if let Moment::Local(date, DayTime::EndOfDay) = written.moment {
+            let origin = self.table.origin(self.row, written.column);
+            let message = format!("24:00 read as 00:00 of the day after {date}");
+            self.diagnostics
+                .push(Diagnostic::new(Code::MidnightAsTwentyFour, origin, message).at(level));
+        }
+    }
+
+    /// With one date for both times, an end before the start is on the next day.
+    fn tell_next_day(&mut self, column: usize, length: Duration) {
+        let minutes = length.num_minutes();
+        let text = format!(
+            "end before start; read as next day ({} h {:02})",
+            minutes / 60,
+            minutes % 60
+        );
+        let origin = self.table.origin(self.row, column);
+        let level = if minutes > 14 * 60 {
+            Level::Warning
+        } else {
+            Level::Note
+        };
+        self.diagnostics
+            .push(Diagnostic::new(Code::EndBeforeStart, origin, text).at(level));
     }
 
     /// The date of a `date` column: absent, wrong, or read.
@@ -373,15 +431,7 @@ impl RowReader<'_> {
         match written.moment {
             Moment::Fixed(at) => Some(at.with_timezone(&Utc)),
             Moment::Local(date, time) => {
-                if time == DayTime::EndOfDay {
-                    self.tell(
-                        Code::MidnightAsTwentyFour,
-                        written.column,
-                        format!("24:00 read as 00:00 of the day after {date}"),
-                    );
-                }
-                let local = clock_text::local(date, time)?;
-                self.local_instant(local, written.column, zone)
+                self.local_instant(clock_text::local(date, time)?, written.column, zone)
             }
         }
     }
@@ -423,39 +473,6 @@ impl RowReader<'_> {
             ),
         }
         Some(at)
-    }
-
-    /// With one date for both times, an end before the start is on the next day.
-    fn next_day_if_before(
-        &mut self,
-        end: &Written,
-        start_at: DateTime<Utc>,
-        end_at: DateTime<Utc>,
-        zone: Tz,
-    ) -> Option<DateTime<Utc>> {
-        let Moment::Local(date, time) = end.moment else {
-            return Some(end_at);
-        };
-        if end_at >= start_at {
-            return Some(end_at);
-        }
-        let local = clock_text::local(date.succ_opt()?, time)?;
-        let moved = self.local_instant(local, end.column, zone)?;
-        let hours = (moved - start_at).num_minutes();
-        let text = format!(
-            "end before start; read as next day ({} h {:02})",
-            hours / 60,
-            hours % 60
-        );
-        let origin = self.table.origin(self.row, end.column);
-        let level = if hours > 14 * 60 {
-            Level::Warning
-        } else {
-            Level::Note
-        };
-        self.diagnostics
-            .push(Diagnostic::new(Code::EndBeforeStart, origin, text).at(level));
-        Some(moved)
     }
 
     /// Length checks; `None` when the row is not used.
@@ -524,11 +541,25 @@ enum Day {
     Read(NaiveDate),
 }
 
-impl Day {
-    fn flatten_day(self) -> Option<NaiveDate> {
-        match self {
-            Self::Read(date) => Some(date),
-            Self::Absent | Self::Wrong => None,
+impl Written {
+    /// Moved to the next date when both times share one date and this one lies before the start; was it moved?
+    ///
+    /// Civil times are compared, so that a clock change on the start's date does not touch an end on the next one.
+    fn on_the_next_date_if_before(self, start: &Self, one_date: bool) -> (Self, bool) {
+        let (Moment::Local(from, since), Moment::Local(date, until)) = (start.moment, self.moment)
+        else {
+            return (self, false);
+        };
+        let before = clock_text::local(date, until) < clock_text::local(from, since);
+        match date.succ_opt() {
+            Some(next) if one_date && before => (
+                Self {
+                    moment: Moment::Local(next, until),
+                    ..self
+                },
+                true,
+            ),
+            _ => (self, false),
         }
     }
 }

@@ -3,7 +3,7 @@
 use super::Reading;
 use super::long_table::{RowShift, Rows};
 use crate::diagnostic::{Code, Diagnostic, Level};
-use crate::roster::{Roster, Shift, UnknownDates, Worker, WorkerId};
+use crate::roster::{DutyKind, Roster, Shift, UnknownDates, Worker, WorkerId};
 use crate::source::Origin;
 use chrono_tz::Tz;
 use std::collections::{BTreeMap, BTreeSet};
@@ -25,17 +25,24 @@ pub(super) fn settle(
         rows.extend(table.shifts);
         lost.extend(table.lost);
     }
+    let rows_read = rows.len();
     rows.retain(|row| in_range(row, reading));
     rows.sort_by(|a, b| key(a).cmp(&key(b)));
     let duplicates = drop_duplicates(&mut rows, diagnostics);
     let mut names: BTreeSet<String> = rows.iter().map(|row| row.worker.clone()).collect();
     names.extend(lost.iter().map(|row| row.worker.clone()));
-    note_near_twins(&names, files, diagnostics);
+    note_near_twins(&rows, &names, files, diagnostics);
     let mut unknown: BTreeSet<(String, Option<chrono::NaiveDate>, Option<chrono::NaiveDate>)> =
         lost.into_iter()
-            .map(|row| {
-                let (first, last) = row.dates.unzip();
-                (row.worker, first, last)
+            .flat_map(|row| {
+                let unplaced = row.dates.is_empty().then_some((None, None));
+                let dates = row
+                    .dates
+                    .into_iter()
+                    .map(|(first, last)| (Some(first), Some(last)));
+                let all: Vec<_> = dates.chain(unplaced).collect();
+                all.into_iter()
+                    .map(move |(first, last)| (row.worker.clone(), first, last))
             })
             .collect();
     let overlapping = overlaps(&rows, diagnostics);
@@ -50,20 +57,40 @@ pub(super) fn settle(
         index += 1;
         !overlapping.contains(&(index - 1))
     });
-    let Some(zone) = zone(&rows, reading) else {
+    if span_is_too_long(&rows, diagnostics) {
+        return (None, duplicates);
+    }
+    let Some(zone) = zone(&rows, files, diagnostics) else {
+        if rows_read > 0 && rows.is_empty() {
+            diagnostics.push(Diagnostic::new(
+                Code::NothingInRange,
+                whole_input(files),
+                "no shift lies between the first and the last date asked for",
+            ));
+        }
         return (None, duplicates);
     };
     note_first_rest(files, diagnostics);
     (Some(roster(rows, &names, unknown, zone)), duplicates)
 }
 
-type Key<'a> = (&'a str, i64, i64, crate::source::OriginId);
+/// Equal shifts stand together whatever the order of the rows; of two that differ by break only, the shorter break comes first.
+type Key<'a> = (
+    &'a str,
+    i64,
+    i64,
+    DutyKind,
+    Option<u16>,
+    crate::source::OriginId,
+);
 
 fn key(row: &RowShift) -> Key<'_> {
     (
         &row.worker,
         row.start.timestamp(),
         row.end.timestamp(),
+        row.kind,
+        row.break_min,
         row.origin,
     )
 }
@@ -158,45 +185,107 @@ fn overlaps(rows: &[RowShift], diagnostics: &mut Vec<Diagnostic>) -> BTreeSet<us
     both
 }
 
-fn note_near_twins(names: &BTreeSet<String>, files: &[&str], diagnostics: &mut Vec<Diagnostic>) {
-    let mut folded: BTreeMap<String, &str> = BTreeMap::new();
+/// Names that differ only by case or spaces, each with its first row.
+fn note_near_twins(
+    rows: &[RowShift],
+    names: &BTreeSet<String>,
+    files: &[&str],
+    diagnostics: &mut Vec<Diagnostic>,
+) {
+    let mut folded: BTreeMap<String, Vec<&str>> = BTreeMap::new();
     for name in names {
-        let plain: String = name
-            .chars()
-            .filter(|c| !c.is_whitespace())
-            .collect::<String>()
-            .to_lowercase();
-        if folded.insert(plain, name).is_some() {
-            diagnostics.push(Diagnostic::new(
-                Code::NearTwinWorkers,
-                Origin::File {
-                    file: files.first().copied().unwrap_or_default().to_owned(),
-                },
-                "two worker names differ only by case or spaces; they are kept apart",
-            ));
-        }
+        let plain: String = name.chars().filter(|c| !c.is_whitespace()).collect();
+        folded.entry(plain.to_lowercase()).or_default().push(name);
+    }
+    for twins in folded.into_values().filter(|twins| twins.len() > 1) {
+        let said: Vec<String> = twins
+            .iter()
+            .map(|name| {
+                let row = rows
+                    .iter()
+                    .filter(|row| row.worker == *name)
+                    .map(|row| row.origin.row)
+                    .min();
+                match row {
+                    Some(row) => format!("{name:?} (row {row})"),
+                    None => format!("{name:?}"),
+                }
+            })
+            .collect();
+        diagnostics.push(Diagnostic::new(
+            Code::NearTwinWorkers,
+            whole_input(files),
+            format!(
+                "{} differ only by case or spaces and are kept apart: rest between their shifts is not judged; if they are one person, write the name one way",
+                said.join(" and ")
+            ),
+        ));
     }
 }
 
-/// The zone given, or the zone of most rows.
-fn zone(rows: &[RowShift], reading: &Reading) -> Option<Tz> {
+/// Years between the first and the last shift that are believed.
+const LONGEST_SPAN_YEARS: i64 = 20;
+
+/// A slip in a year would make a roster of decades: refused, with the row that lies furthest from the middle one.
+fn span_is_too_long(rows: &[RowShift], diagnostics: &mut Vec<Diagnostic>) -> bool {
+    let mut starts: Vec<&RowShift> = rows.iter().collect();
+    starts.sort_by_key(|row| row.start);
+    let (Some(first), Some(last)) = (starts.first(), starts.last()) else {
+        return false;
+    };
+    let years = (last.start - first.start).num_days() / 365;
+    if years <= LONGEST_SPAN_YEARS {
+        return false;
+    }
+    let middle = starts[starts.len() / 2].start;
+    let far = if middle - first.start > last.start - middle {
+        first
+    } else {
+        last
+    };
+    diagnostics.push(Diagnostic::new(
+        Code::SpanTooLong,
+        far.place.clone(),
+        format!("the roster spans {years} years, more than {LONGEST_SPAN_YEARS}; check the year of this row"),
+    ));
+    true
+}
+
+/// The zone of most rows; a zone given from outside has already filled the rows that name none.
+fn zone(rows: &[RowShift], files: &[&str], diagnostics: &mut Vec<Diagnostic>) -> Option<Tz> {
     let mut counts: BTreeMap<&'static str, (usize, Tz)> = BTreeMap::new();
     for row in rows {
         counts.entry(row.zone.name()).or_insert((0, row.zone)).0 += 1;
     }
+    let names: Vec<&str> = counts.keys().copied().collect();
+    let several = names.len() > 1;
     let most = counts
-        .into_values()
+        .values()
         .max_by_key(|(count, _)| *count)
-        .map(|(_, zone)| zone)?;
-    Some(reading.zone.unwrap_or(most))
+        .map(|(_, zone)| *zone)?;
+    if several {
+        diagnostics.push(Diagnostic::new(
+            Code::SeveralZones,
+            whole_input(files),
+            format!(
+                "rows name several zones ({}); instants are right, but dates and clock windows are read in {most}",
+                names.join(", ")
+            ),
+        ));
+    }
+    Some(most)
+}
+
+fn whole_input(files: &[&str]) -> Origin {
+    Origin::File {
+        file: files.first().copied().unwrap_or_default().to_owned(),
+    }
 }
 
 fn note_first_rest(files: &[&str], diagnostics: &mut Vec<Diagnostic>) {
     diagnostics.push(Diagnostic::new(
         Code::FirstRestUnknown,
-        Origin::File {
-            file: files.first().copied().unwrap_or_default().to_owned(),
-        },
+        whole_input(files),
         "no shifts before the first day are known; the rest before each worker's first shift is not judged",
     ));
 }

@@ -2,7 +2,7 @@
 
 use super::Input;
 use super::table::{Place, Row, Table};
-use crate::diagnostic::{Code, Diagnostic};
+use crate::diagnostic::{Code, Diagnostic, Level};
 use crate::source::Origin;
 
 /// Delimiters tried, the most common first.
@@ -15,7 +15,29 @@ pub fn read(input: &Input<'_>, diagnostics: &mut Vec<Diagnostic>) -> Option<Tabl
     let file = || Origin::File {
         file: input.name.to_owned(),
     };
-    let text = decode(input, diagnostics)?;
+    // Line ends are made alike first, so that line numbers are the same whatever program wrote the file.
+    let text = decode(input, diagnostics)?
+        .replace("\r\n", "\n")
+        .replace('\r', "\n");
+    if let Some((line, column)) = unclosed_quote(&text) {
+        let text = text.lines().nth(line - 1).unwrap_or_default().to_owned();
+        diagnostics.push(
+            Diagnostic::new(
+                Code::RaggedRow,
+                Origin::Text {
+                    file: input.name.to_owned(),
+                    line: u32::try_from(line).unwrap_or(u32::MAX),
+                    column,
+                    name: None,
+                    text,
+                    width: 1,
+                },
+                "the quote opened here is never closed, so the rows after it cannot be told apart; close it or take it away",
+            )
+            .at(Level::Fatal),
+        );
+        return None;
+    }
     let delimiter = delimiter_of(&text);
     if delimiter != ',' {
         diagnostics.push(Diagnostic::new(
@@ -48,6 +70,30 @@ pub fn read(input: &Input<'_>, diagnostics: &mut Vec<Diagnostic>) -> Option<Tabl
         return None;
     }
     Some(table)
+}
+
+/// Line and column of a quote that is still open at the end of the text.
+///
+/// A quote opens only at the start of a field, as the csv crate has it.
+fn unclosed_quote(text: &str) -> Option<(usize, u32)> {
+    let mut open = None;
+    let mut at_field_start = true;
+    let (mut line, mut column) = (1, 1);
+    for c in text.chars() {
+        match (c, open) {
+            ('"', None) if at_field_start => open = Some((line, column)),
+            // A doubled quote closes and opens again: the end result is the same.
+            ('"', Some(_)) => open = None,
+            _ => {}
+        }
+        at_field_start = c == '\n' || DELIMITERS.contains(&c) || (c == '"' && open.is_none());
+        column += 1;
+        if c == '\n' {
+            line += 1;
+            column = 1;
+        }
+    }
+    open
 }
 
 /// Decodes UTF-8, UTF-16 with a byte-order mark, or Windows-1252.
@@ -236,6 +282,19 @@ mod tests {
     }
 
     #[test]
+    fn line_numbers_do_not_depend_on_the_line_ends() {
+        for text in [
+            "worker,start\n\nA,1\nB,2\n",
+            "worker,start\r\n\r\nA,1\r\nB,2\r\n",
+            "worker,start\r\rA,1\rB,2\r",
+        ] {
+            let (table, _) = table(text.as_bytes());
+            let numbers: Vec<u32> = table.unwrap().rows.iter().map(Row::number).collect();
+            assert_eq!(numbers, [3, 4], "{text:?}");
+        }
+    }
+
+    #[test]
     fn byte_order_marks_and_semicolons_are_noted() {
         let (table, diagnostics) = table("\u{feff}worker;start\nA;1\n".as_bytes());
         assert_eq!(table.unwrap().header.cells, ["worker", "start"]);
@@ -247,6 +306,16 @@ mod tests {
         let (table, diagnostics) = table(b"worker,start\n\xC5s,1\n");
         assert_eq!(table.unwrap().rows[0].cells[0], "\u{c5}s");
         assert_eq!(codes(&diagnostics), ["C03"]);
+    }
+
+    #[test]
+    fn an_unclosed_quote_is_shown_where_it_opens() {
+        let (open, diagnostics) = table(b"worker,start\nA,\"1\nB,2\nC,3\n");
+        assert!(open.is_none());
+        assert_eq!(codes(&diagnostics), ["C06"]);
+        assert_eq!(diagnostics[0].origin.to_string(), "r.csv:2:3");
+        let (table, _) = table(b"worker,start\n\"A \"\"x\"\"\",1\n");
+        assert_eq!(table.unwrap().rows[0].cells[0], "A \"x\"");
     }
 
     #[test]

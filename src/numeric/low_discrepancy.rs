@@ -14,7 +14,7 @@ use statrs::function::erf::erfc_inv;
 ///
 /// Additive recurrence of Kronecker type with the constant of Roberts (2018), "The unreasonable effectiveness of quasirandom sequences" (from memory);
 /// rotation of Cranley and Patterson (1976), SIAM J Numer Anal 13:904 (from memory).
-/// Deviations: the columns are standardised afterwards, so that a small ensemble has exactly the published spread.
+/// Deviations: the columns are made uncorrelated (Gram-Schmidt) and standardised, so that a small ensemble has exactly the published, independent spreads.
 ///
 /// # Example
 ///
@@ -25,11 +25,11 @@ use statrs::function::erf::erfc_inv;
 /// assert!(mean.abs() < 1e-12);
 /// ```
 pub fn normal_sample(members: usize, spreads: usize, seed: u64) -> Vec<Vec<f64>> {
-    let mut sample = vec![vec![0.0; spreads]; members];
     let golden = golden_root(spreads);
     let mut state = seed;
     let mut alpha = 1.0;
-    for spread in 0..spreads {
+    let mut columns: Vec<Vec<f64>> = Vec::new();
+    for _ in 0..spreads {
         alpha /= golden;
         let mut u = next_uniform(&mut state);
         let column: Vec<f64> = (0..members)
@@ -39,11 +39,30 @@ pub fn normal_sample(members: usize, spreads: usize, seed: u64) -> Vec<Vec<f64>>
                 -std::f64::consts::SQRT_2 * erfc_inv(2.0 * u.clamp(1e-6, 1.0 - 1e-6))
             })
             .collect();
-        for (row, z) in sample.iter_mut().zip(standardise(&column)) {
-            row[spread] = z;
+        columns.push(standardise(&without_shared_part(column, &columns)));
+    }
+    (0..members)
+        .map(|member| columns.iter().map(|column| column[member]).collect())
+        .collect()
+}
+
+/// Takes away what a column shares with earlier, standardised ones, so that the spreads are independent in a small sample too.
+#[expect(
+    clippy::cast_precision_loss,
+    reason = "the number of members is far below 2^53"
+)]
+fn without_shared_part(mut column: Vec<f64>, earlier: &[Vec<f64>]) -> Vec<f64> {
+    // With as many columns as members nothing would be left.
+    if earlier.len() + 1 >= column.len() {
+        return column;
+    }
+    for other in earlier {
+        let shared = column.iter().zip(other).map(|(a, b)| a * b).sum::<f64>() / other.len() as f64;
+        for (value, part) in column.iter_mut().zip(other) {
+            *value -= shared * part;
         }
     }
-    sample
+    column
 }
 
 /// Positive root of g^(d+1) = g + 1, by fixed-point iteration.
@@ -87,17 +106,20 @@ mod tests {
     use super::*;
 
     #[test]
-    fn columns_have_unit_spread_and_hardly_correlate() {
-        let sample = normal_sample(64, 5, 7);
-        for a in 0..5 {
-            let variance = sample.iter().map(|row| row[a] * row[a]).sum::<f64>() / 64.0;
-            assert!((variance - 1.0).abs() < 1e-9);
-            for b in 0..a {
-                let correlation = sample.iter().map(|row| row[a] * row[b]).sum::<f64>() / 64.0;
-                assert!(
-                    correlation.abs() < 0.25,
-                    "columns {a} and {b}: {correlation}"
-                );
+    fn columns_have_unit_spread_and_do_not_correlate() {
+        for (members, seed) in [(16, 1), (32, 1), (32, 2), (64, 7)] {
+            let sample = normal_sample(members, 5, seed);
+            let count = f64::from(u32::try_from(members).unwrap());
+            for a in 0..5 {
+                let variance = sample.iter().map(|row| row[a] * row[a]).sum::<f64>() / count;
+                assert!((variance - 1.0).abs() < 1e-9);
+                for b in 0..a {
+                    let correlation = sample.iter().map(|row| row[a] * row[b]).sum::<f64>() / count;
+                    assert!(
+                        correlation.abs() < 1e-9,
+                        "columns {a} and {b}: {correlation}"
+                    );
+                }
             }
         }
     }

@@ -11,6 +11,18 @@ pub struct Quantiles {
     pub p95: f64,
 }
 
+impl Quantiles {
+    /// The same, all moved by `by`.
+    #[must_use]
+    pub fn moved(self, by: f64) -> Self {
+        Self {
+            median: self.median + by,
+            p05: self.p05 + by,
+            p95: self.p95 + by,
+        }
+    }
+}
+
 /// Median, 5th and 95th percentile; `None` for an empty sample.
 ///
 /// # Source
@@ -51,13 +63,21 @@ fn of_sorted(sorted: &[f64], share: f64) -> f64 {
     sorted[below] + (rank - rank.floor()) * (sorted[above] - sorted[below])
 }
 
-/// Share of the values for which `holds` is true.
-pub fn share(values: &[f64], holds: impl Fn(f64) -> bool) -> f64 {
-    if values.is_empty() {
-        return 0.0;
-    }
-    let count = values.iter().filter(|value| holds(**value)).count();
-    ratio(count, values.len())
+/// Quantiles of values on a circle: taken around their mean direction, the median moved into [low, low + period) and the band with it.
+///
+/// # Example
+///
+/// ```
+/// use acroshift::numeric::quantile::circular_quantiles;
+/// // Clock hours around midnight: the median is not noon.
+/// let q = circular_quantiles(&[23.0, 0.5, 1.0], 24.0, 0.0).expect("three values have quantiles");
+/// assert!((q.median - 0.5).abs() < 1e-9);
+/// assert!((q.p05 - -0.85).abs() < 1e-9);
+/// ```
+pub fn circular_quantiles(values: &[f64], period: f64, low: f64) -> Option<Quantiles> {
+    let anchor = super::circular::mean(values, period);
+    let q = quantiles(&super::circular::unwrap_near(values, anchor, period))?;
+    Some(q.moved(-period * ((q.median - low) / period).floor()))
 }
 
 /// `part / whole` for counts.

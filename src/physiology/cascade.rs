@@ -176,7 +176,7 @@ impl Cascade {
     ///
     /// # Source
     ///
-    /// Vinther, Andersen and Ottesen 2011, J Math Biol 63:663, with a drive D in the place of its constant.
+    /// Vinther, Andersen and Ottesen 2011, J Math Biol 63:663 (equations from memory; they reproduce the published equilibrium), with a drive D in the place of its constant.
     pub fn step(&self, state: &mut CascadeState, drive: &[[f64; 3]; LANES]) {
         for (i, [start, middle, end]) in drive.iter().enumerate() {
             let x = [state.crh[i], state.acth[i], state.cortisol[i]];
@@ -365,7 +365,7 @@ fn debt_by_cycle(cascade: &Cascade, track: &MemberTrack, debt: SleepDebt) -> Vec
         .cbtmin_min
         .iter()
         .map(|cbtmin| {
-            let end = whole_minute(cbtmin + numbers.from_min);
+            let end = Minute::nearest(cbtmin + numbers.from_min);
             let known = track.sleeps.first().is_some_and(|s| s.from <= end + -1440);
             if !known {
                 return 0.0;
@@ -375,12 +375,4 @@ fn debt_by_cycle(cascade: &Cascade, track: &MemberTrack, debt: SleepDebt) -> Vec
             numbers.saturation * (1.0 - libm::exp(-lost / numbers.scale_h))
         })
         .collect()
-}
-
-#[expect(
-    clippy::cast_possible_truncation,
-    reason = "minutes of a roster fit an i64 by far"
-)]
-fn whole_minute(minute: f64) -> Minute {
-    Minute(minute.round() as i64)
 }

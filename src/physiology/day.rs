@@ -18,7 +18,7 @@ pub struct CortisolDay {
     pub peak: f64,
     /// When.
     pub peak_at: Minute,
-    /// Lowest value, nmol/L.
+    /// Lowest value of the stretch in which the nadir is looked for, nmol/L.
     pub nadir: f64,
     /// When.
     pub nadir_at: Minute,
@@ -35,7 +35,34 @@ pub struct CortisolSeries<'a> {
     pub values: &'a [f64],
 }
 
-/// Features of [from, to).
+/// Where features are looked for, first minute and first minute after.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub struct Stretch {
+    /// Mean, cosine and peak.
+    pub day: (Minute, Minute),
+    /// Nadir: a date has it at both ends, a window from noon to noon in its middle.
+    pub night: (Minute, Minute),
+}
+
+impl Stretch {
+    /// The same stretch for every feature.
+    pub fn whole(from: Minute, to: Minute) -> Self {
+        Self {
+            day: (from, to),
+            night: (from, to),
+        }
+    }
+
+    /// A date, with the nadir of the night that leads into it.
+    pub fn date(from: Minute, to: Minute) -> Self {
+        Self {
+            day: (from, to),
+            night: (from + -720, to + -720),
+        }
+    }
+}
+
+/// Features of a stretch.
 ///
 /// The quiescent interval may reach beyond the stretch on either side.
 /// Returns `None` when the stretch does not lie inside the series.
@@ -45,9 +72,10 @@ pub struct CortisolSeries<'a> {
 /// Quiescence: own definition after the idea of Griefahn 2006, below 60 % of the mean.
 pub fn cortisol_day(
     series: CortisolSeries<'_>,
-    (from, to): (Minute, Minute),
+    stretch: Stretch,
     share_of_mean: f64,
 ) -> Option<CortisolDay> {
+    let (from, to) = stretch.day;
     let first = usize::try_from(from - series.from).ok()?;
     let last = usize::try_from(to - series.from).ok()?;
     let values = series.values.get(first..last)?;
@@ -55,9 +83,12 @@ pub fn cortisol_day(
     let fit = fit_cosine(&hours, values, 24.0)?;
     let mean = values.iter().sum::<f64>() / Minute(signed(values.len())).as_f64();
     let (peak_index, peak) = extreme(values, |a, b| a > b)?;
-    let (nadir_index, nadir) = extreme(values, |a, b| a < b)?;
+    let evening = usize::try_from(stretch.night.0 - series.from).ok()?;
+    let morning = usize::try_from(stretch.night.1 - series.from).ok()?;
+    let night = series.values.get(evening..morning)?;
+    let (nadir_index, nadir) = extreme(night, |a, b| a < b)?;
     let threshold = share_of_mean * mean;
-    let (mut begins, mut ends) = (first + nadir_index, first + nadir_index);
+    let (mut begins, mut ends) = (evening + nadir_index, evening + nadir_index);
     while begins > 0 && series.values[begins - 1] < threshold {
         begins -= 1;
     }
@@ -72,7 +103,7 @@ pub fn cortisol_day(
         peak,
         peak_at: from + signed(peak_index),
         nadir,
-        nadir_at: from + signed(nadir_index),
+        nadir_at: series.from + signed(evening + nadir_index),
         quiescent: (series.from + signed(begins), series.from + signed(ends)),
     })
 }

@@ -16,7 +16,7 @@ pub struct Member {
     pub tau_h: f64,
     /// Factor on lux at the eye.
     pub sensitivity: f64,
-    /// Habitual bedtime, clock hour; may be negative (before midnight).
+    /// Habitual bedtime, clock hour; from 24 on it lies after midnight.
     pub bed_h: f64,
     /// Sleep need, hours.
     pub need_h: f64,
@@ -72,14 +72,19 @@ pub fn members(set: &EnsembleSet, sampling: Sampling) -> Vec<Member> {
         .max(1)
         .div_ceil(MEMBER_GROUP)
         .saturating_mul(MEMBER_GROUP);
-    normal_sample(count, 5, sampling.seed)
-        .into_iter()
-        .enumerate()
-        .map(|(index, z)| member(set, sampling, &z, index))
+    // Unknown morning daylight: each person is lived in both cases, so that nothing but daylight tells them apart.
+    let cases: &[bool] = match sampling.morning_daylight {
+        Some(true) => &[true],
+        Some(false) => &[false],
+        None => &[true, false],
+    };
+    normal_sample(count / cases.len(), 5, sampling.seed)
+        .iter()
+        .flat_map(|z| cases.iter().map(|seen| member(set, sampling, z, *seen)))
         .collect()
 }
 
-fn member(set: &EnsembleSet, sampling: Sampling, z: &[f64], index: usize) -> Member {
+fn member(set: &EnsembleSet, sampling: Sampling, z: &[f64], seen: bool) -> Member {
     let clip = |value: f64, limit: f64| value.clamp(-limit, limit);
     let limit = set.clipping.sd_units.value;
     let need_h = set.habit.need.value
@@ -89,11 +94,11 @@ fn member(set: &EnsembleSet, sampling: Sampling, z: &[f64], index: usize) -> Mem
         + set.habit.mid_sleep_sd.value * clip(z[2], limit);
     Member {
         tau_h: set.period.mean.value + set.period.sd.value * clip(z[0], limit),
-        sensitivity: libm::pow(10.0, set.sensitivity.log10_sd.value * z[1]),
+        sensitivity: libm::pow(10.0, set.sensitivity.log10_sd.value * clip(z[1], limit)),
         bed_h: mid_sleep_h - need_h / 2.0,
         need_h,
-        commute_min: sampling.commute_min * libm::exp(set.commute.ln_sd.value * z[4]),
-        sees_morning_daylight: sampling.morning_daylight.unwrap_or(index.is_multiple_of(2)),
+        commute_min: sampling.commute_min * libm::exp(set.commute.ln_sd.value * clip(z[4], limit)),
+        sees_morning_daylight: seen,
     }
 }
 
@@ -120,12 +125,17 @@ mod tests {
     }
 
     #[test]
-    fn unknown_daylight_gives_half_the_members_each() {
+    fn unknown_daylight_lives_the_same_people_in_both_cases() {
         let set = ModelSets::embedded().ensemble;
-        let seen = members(&set, sampling(32))
-            .iter()
-            .filter(|m| m.sees_morning_daylight)
-            .count();
-        assert_eq!(seen, 16);
+        let members = members(&set, sampling(32));
+        assert_eq!(members.len(), 32);
+        for pair in members.chunks(2) {
+            assert!(pair[0].sees_morning_daylight && !pair[1].sees_morning_daylight);
+            let same = Member {
+                sees_morning_daylight: true,
+                ..pair[1]
+            };
+            assert_eq!(pair[0], same);
+        }
     }
 }

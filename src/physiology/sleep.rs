@@ -12,6 +12,7 @@
 use super::ensemble::Member;
 use super::parameters::SleepSet;
 use crate::numeric::periodic_table::PeriodicTable;
+use crate::units::Minute;
 
 /// Comparisons of decimal minutes allow for rounding of the habitual times.
 const TOLERANCE_MIN: f64 = 1e-6;
@@ -123,8 +124,8 @@ impl Sleeper {
         let (bed_pressure, wake_pressure) = model.habitual_pressure(member.need_h);
         let c_at = |minute: f64| model.process_c.at(minute - zero_min);
         let awake_min =
-            crate::numeric::circular::wrap(minutes(start) - bed_min - need_min, DAY_MIN);
-        let night = ((minutes(start) - bed_min + need_min / 2.0) / DAY_MIN).floor();
+            crate::numeric::circular::wrap(Minute(start).as_f64() - bed_min - need_min, DAY_MIN);
+        let night = ((Minute(start).as_f64() - bed_min + need_min / 2.0) / DAY_MIN).floor();
         Self {
             bed_min,
             need_min,
@@ -133,7 +134,7 @@ impl Sleeper {
             zero_min,
             pressure: 1.0 - (1.0 - wake_pressure) * libm::exp(-awake_min / model.tau_rise_min),
             asleep_since: None,
-            last_wake: start - whole(awake_min),
+            last_wake: start - Minute::nearest(awake_min).0,
             slept_in_night_min: need_min,
             night,
         }
@@ -159,10 +160,10 @@ impl Sleeper {
         let into_night = self.minutes_into_night(around.clock_min);
         let c = model
             .process_c
-            .at(minutes(around.minute) - self.zero_min - displacement_min);
+            .at(Minute(around.minute).as_f64() - self.zero_min - displacement_min);
         if let Some(onset) = self.asleep_since {
             let natural = self.pressure <= self.lower + model.amplitude * c
-                && minutes(around.minute - onset) >= model.shortest_min - TOLERANCE_MIN;
+                && Minute(around.minute - onset).as_f64() >= model.shortest_min - TOLERANCE_MIN;
             if !around.sleep_possible || natural {
                 self.asleep_since = None;
                 self.last_wake = around.minute;
@@ -179,7 +180,7 @@ impl Sleeper {
 
     /// Minutes since the sleep-counting day began, 4 h before a habitual bedtime of 8 h of sleep; a new one empties the count of sleep.
     fn minutes_into_night(&mut self, clock_min: i64) -> f64 {
-        let from_start = minutes(clock_min) - self.bed_min + self.need_min / 2.0;
+        let from_start = Minute(clock_min).as_f64() - self.bed_min + self.need_min / 2.0;
         let night = ((from_start + TOLERANCE_MIN) / DAY_MIN).floor();
         if night > self.night {
             self.night = night;
@@ -195,9 +196,9 @@ impl Sleeper {
         into_night: f64,
         c: f64,
     ) -> bool {
-        let until_alarm = around
-            .alarm
-            .map_or(f64::INFINITY, |alarm| minutes(alarm - around.minute));
+        let until_alarm = around.alarm.map_or(f64::INFINITY, |alarm| {
+            Minute(alarm - around.minute).as_f64()
+        });
         if !around.sleep_possible || until_alarm < model.shortest_min - TOLERANCE_MIN {
             return false;
         }
@@ -237,22 +238,6 @@ impl Sleeper {
             self.pressure = 1.0 - (1.0 - self.pressure) * model.rise;
         }
     }
-}
-
-#[expect(
-    clippy::cast_precision_loss,
-    reason = "minutes of a roster are far below 2^53"
-)]
-fn minutes(whole: i64) -> f64 {
-    whole as f64
-}
-
-#[expect(
-    clippy::cast_possible_truncation,
-    reason = "hours awake are a few hundred minutes"
-)]
-fn whole(minutes: f64) -> i64 {
-    minutes.round() as i64
 }
 
 #[cfg(test)]

@@ -1,7 +1,7 @@
 //! What one member lived through: sleep and `CBTmin`, including remembered habitual days before the roster.
 
 use super::ensemble::Member;
-use crate::units::{Minute, minutes_to_hours};
+use crate::units::{Minute, Phase, PhaseShift, minutes_to_hours};
 
 /// One sleep.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -52,8 +52,8 @@ impl MemberTrack {
             .map(|back| {
                 let bed = Minute(-1440 * (back + 1)).as_f64() + member.bed_h * 60.0 - 1440.0;
                 SleepEpisode {
-                    from: whole(bed),
-                    to: whole(bed + member.need_h * 60.0),
+                    from: Minute::from_which(bed),
+                    to: Minute::from_which(bed + member.need_h * 60.0),
                     cut: false,
                 }
             })
@@ -110,9 +110,9 @@ impl MemberTrack {
         }
     }
 
-    /// Hours by which `cbtmin_min` stands earlier (positive) or later (negative) than on habitual days, in (-12, 12].
-    pub fn earlier_h(&self, cbtmin_min: f64) -> f64 {
-        crate::numeric::circular::wrap_half(self.habitual_cbtmin_min - cbtmin_min, 1440.0) / 60.0
+    /// How far a `CBTmin` stands from the habitual one, on the elapsed axis.
+    pub fn displacement(&self, cbtmin_min: f64) -> PhaseShift {
+        Phase::at_minute(self.habitual_cbtmin_min) - Phase::at_minute(cbtmin_min)
     }
 
     /// Sleep midpoint minus nearest `CBTmin`, hours in (-12, 12]; positive is sleep after `CBTmin`.
@@ -146,14 +146,6 @@ impl MemberTrack {
     }
 }
 
-#[expect(
-    clippy::cast_possible_truncation,
-    reason = "minutes of a roster fit an i64 by far"
-)]
-fn whole(minutes: f64) -> Minute {
-    Minute((minutes - 1e-6).ceil() as i64)
-}
-
 #[cfg(test)]
 mod tests {
     use super::*;
@@ -181,7 +173,7 @@ mod tests {
     #[test]
     fn a_later_clock_has_a_negative_displacement() {
         let track = track();
-        assert!((track.earlier_h(210.0 + 90.0) - -1.5).abs() < 1e-9);
+        assert!((track.displacement(210.0 + 90.0).hours() - -1.5).abs() < 1e-9);
     }
 
     #[test]

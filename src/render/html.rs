@@ -5,6 +5,7 @@ mod reference;
 mod workers;
 
 use super::chart;
+use crate::report::Audience;
 use crate::report::document::{FindingRow, ScreenReport};
 use crate::report::wording::counted;
 use maud::{DOCTYPE, Markup, PreEscaped, html};
@@ -36,7 +37,7 @@ fn page(report: &ScreenReport) -> Markup {
                 meta name="viewport" content="width=device-width, initial-scale=1";
                 meta name="referrer" content="no-referrer";
                 title { (title) }
-                style { (PreEscaped(PAGE_CSS)) (PreEscaped(chart::CHART_CSS)) }
+                style { (PreEscaped(PAGE_CSS)) (PreEscaped(chart::CHART_CSS)) (PreEscaped(page_footer(report))) }
             }
             body {
                 (PreEscaped(chart::pattern_definitions()))
@@ -59,6 +60,18 @@ fn page(report: &ScreenReport) -> Markup {
             }
         }
     }
+}
+
+/// Every printed page says for whom it is and of which dates.
+fn page_footer(report: &ScreenReport) -> String {
+    let confidential = match report.audience {
+        Audience::Planner => "planner",
+        Audience::Clinician => "clinician, confidential",
+    };
+    format!(
+        "@page {{ @bottom-left {{ content: \"acroshift, audience {confidential}, roster {} to {}\"; font-size: 8pt; }} }}",
+        report.provenance.from, report.provenance.to
+    )
 }
 
 fn head(report: &ScreenReport, title: &str) -> Markup {
@@ -158,7 +171,7 @@ fn findings(report: &ScreenReport) -> Markup {
                         th scope="col" { "From" }
                         th scope="col" { "Whom" }
                         th scope="col" { "What" }
-                        th scope="col" { "Rules, sources, rows" }
+                        th scope="col" { "Sources, rows of the input" }
                     } }
                     tbody { @for finding in &report.findings { (finding_row(finding)) } }
                 }
@@ -182,11 +195,13 @@ fn finding_row(finding: &FindingRow) -> Markup {
             td {
                 (unbroken(&finding.message))
                 @if let Some((hold, of)) = finding.members {
-                    " " span class="source" { "(in " (hold) " of " (of) " members)" }
+                    " " span class="source" { "(holds in " (hold) " of " (of) " simulated adults)" }
+                }
+                @if !finding.places.is_empty() {
+                    details { summary { "All " (finding.places.len()) " places" } ul { @for place in &finding.places { li { (unbroken(place)) } } } }
                 }
             }
             td class="source" {
-                @if !finding.rules.is_empty() { (finding.rules.join(", ")) ". " }
                 (finding.source) "."
                 @if !finding.rows_text.is_empty() { " Input: " (finding.rows_text) "." }
             }

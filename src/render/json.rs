@@ -1,8 +1,8 @@
 //! `result.json`, schema `acroshift.screen/1`: hours are decimal, instants RFC 3339 with offset, missing is null.
 
 use crate::report::document::{
-    BandValue, DayRow, FindingRow, LineSection, LineShiftRow, LineWindowRow, ScreenReport,
-    WorkerSection,
+    BandValue, CasedBand, DayRow, FindingRow, LineSection, LineShiftRow, LineWindowRow,
+    ScreenReport, WorkerSection,
 };
 use serde::Serialize;
 use std::collections::BTreeMap;
@@ -137,6 +137,16 @@ struct Band {
     p95: f64,
 }
 
+/// A number with two daylight cases has no common median: `median` is null and `cases` holds both.
+#[derive(Serialize)]
+struct Cased<'a> {
+    median: Option<f64>,
+    p05: f64,
+    p95: f64,
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    cases: Vec<CaseBand<'a>>,
+}
+
 #[derive(Serialize)]
 struct CaseBand<'a> {
     median: f64,
@@ -164,8 +174,8 @@ struct LineWindow<'a> {
     k24: f64,
     k48: f64,
     sleep: &'a str,
-    phase_displacement_h: Band,
-    cbtmin_displacement_h: Band,
+    phase_displacement_h: Option<Band>,
+    cbtmin_displacement_h: Cased<'a>,
     quiescent_awake_excess_h: Band,
     history_assumed: bool,
 }
@@ -187,13 +197,13 @@ struct Cortisol {
     mesor: Band,
     amplitude: Band,
     amplitude_ratio: Band,
-    acrophase_h: Band,
+    acrophase_h: Cased<'static>,
     peak: Band,
-    peak_time: Band,
+    peak_time: Cased<'static>,
     nadir: Band,
-    nadir_time: Band,
-    quiescent_start: Band,
-    quiescent_end: Band,
+    nadir_time: Cased<'static>,
+    quiescent_start: Cased<'static>,
+    quiescent_end: Cased<'static>,
 }
 
 #[derive(Serialize)]
@@ -213,6 +223,7 @@ struct Finding<'a> {
     source: &'a str,
     rows: &'a [String],
     occurrences: usize,
+    places: &'a [String],
     message: &'a str,
 }
 
@@ -345,7 +356,11 @@ fn worker(section: &WorkerSection) -> Worker<'_> {
                 reasons: &window.reasons,
             })
             .collect(),
-        exposure: section.exposure.iter().copied().collect(),
+        exposure: section
+            .exposure
+            .iter()
+            .map(|(name, _, value)| (*name, *value))
+            .collect(),
     }
 }
 
@@ -369,6 +384,31 @@ fn band(value: BandValue) -> Band {
     }
 }
 
+fn cased(value: &CasedBand) -> Cased<'static> {
+    Cased {
+        median: value.median(),
+        p05: value.all.p05,
+        p95: value.all.p95,
+        cases: value
+            .cases
+            .iter()
+            .flat_map(|_| case_bands(&value.entries()))
+            .collect(),
+    }
+}
+
+fn case_bands<'a>(entries: &[(BandValue, Option<&'a str>)]) -> Vec<CaseBand<'a>> {
+    entries
+        .iter()
+        .map(|(value, case)| CaseBand {
+            median: value.median,
+            p05: value.p05,
+            p95: value.p95,
+            case: *case,
+        })
+        .collect()
+}
+
 fn line_shift(row: &LineShiftRow) -> LineShift<'_> {
     LineShift {
         start: &row.start,
@@ -388,28 +428,18 @@ fn line_window(row: &LineWindowRow) -> LineWindow<'_> {
         k24: row.k24,
         k48: row.k48,
         sleep: row.sleep_test,
-        phase_displacement_h: band(row.phase_displacement_h),
-        cbtmin_displacement_h: band(row.cbtmin_displacement_h),
+        phase_displacement_h: row.phase_displacement_h.map(band),
+        cbtmin_displacement_h: cased(&row.cbtmin_displacement_h),
         quiescent_awake_excess_h: band(row.quiescent_awake_excess_h),
         history_assumed: row.history_assumed,
     }
 }
 
 fn day<'a>(row: &'a DayRow, pacemaker: &'a str) -> Day<'a> {
-    let cases = |list: &'a [(BandValue, Option<&'static str>)]| {
-        list.iter()
-            .map(|(value, case)| CaseBand {
-                median: value.median,
-                p05: value.p05,
-                p95: value.p95,
-                case: *case,
-            })
-            .collect()
-    };
     Day {
         date: &row.date,
-        cbtmin: cases(&row.cbtmin),
-        dlmo: cases(&row.dlmo),
+        cbtmin: case_bands(&row.cbtmin),
+        dlmo: case_bands(&row.dlmo),
         cbtmin_reading: "polar-angle",
         pacemaker,
         sleep_h: band(row.sleep_h),
@@ -418,13 +448,13 @@ fn day<'a>(row: &'a DayRow, pacemaker: &'a str) -> Day<'a> {
             mesor: band(row.mesor),
             amplitude: band(row.amplitude),
             amplitude_ratio: band(row.amplitude_ratio),
-            acrophase_h: band(row.acrophase_h),
+            acrophase_h: cased(&row.acrophase_h),
             peak: band(row.peak),
-            peak_time: band(row.peak_time),
+            peak_time: cased(&row.peak_time),
             nadir: band(row.nadir),
-            nadir_time: band(row.nadir_time),
-            quiescent_start: band(row.quiescent_start),
-            quiescent_end: band(row.quiescent_end),
+            nadir_time: cased(&row.nadir_time),
+            quiescent_start: cased(&row.quiescent_start),
+            quiescent_end: cased(&row.quiescent_end),
         },
     }
 }
@@ -446,6 +476,7 @@ fn finding(row: &FindingRow) -> Finding<'_> {
         source: &row.source,
         rows: &row.rows,
         occurrences: row.occurrences,
+        places: &row.places,
         message: &row.message,
     }
 }

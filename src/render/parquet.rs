@@ -2,7 +2,7 @@
 //!
 //! Column names are those of `result.json`; a modelled number is three columns: median, `_p05`, `_p95`.
 
-use crate::report::document::{BandValue, ScreenReport};
+use crate::report::document::{BandValue, CasedBand, ScreenReport};
 use polars::prelude::{Column, DataFrame, NamedFrom, ParquetWriter, PolarsError, Series};
 use std::io::Write;
 
@@ -59,6 +59,20 @@ fn banded(name: &str, values: &[BandValue]) -> [Column; 3] {
     ]
 }
 
+/// Three columns of a number that may have two daylight cases; then its median is missing.
+fn cased(name: &str, values: &[CasedBand]) -> [Column; 3] {
+    let of =
+        |part: fn(&BandValue) -> f64| values.iter().map(|v| part(&v.all)).collect::<Vec<f64>>();
+    [
+        column(
+            name,
+            values.iter().map(CasedBand::median).collect::<Vec<_>>(),
+        ),
+        column(&format!("{name}_p05"), of(|v| v.p05)),
+        column(&format!("{name}_p95"), of(|v| v.p95)),
+    ]
+}
+
 fn count(value: usize) -> i64 {
     i64::try_from(value).unwrap_or(i64::MAX)
 }
@@ -93,19 +107,27 @@ fn lines(report: &ScreenReport) -> Result<DataFrame, PolarsError> {
         column("cbtmin", marker(|day| &day.cbtmin)),
         column("dlmo", marker(|day| &day.dlmo)),
     ];
-    let values: [(&str, fn(&crate::report::DayRow) -> BandValue); 9] = [
+    let values: [(&str, fn(&crate::report::DayRow) -> BandValue); 6] = [
         ("sleep_h", |d| d.sleep_h),
         ("mesor", |d| d.mesor),
         ("amplitude", |d| d.amplitude),
         ("amplitude_ratio", |d| d.amplitude_ratio),
-        ("acrophase_h", |d| d.acrophase_h),
         ("peak", |d| d.peak),
-        ("peak_time", |d| d.peak_time),
         ("nadir", |d| d.nadir),
-        ("nadir_time", |d| d.nadir_time),
     ];
     for (name, value) in values {
         columns.extend(banded(name, &of(value)));
+    }
+    let times: [(&str, fn(&crate::report::DayRow) -> CasedBand); 5] = [
+        ("acrophase_h", |d| d.acrophase_h),
+        ("peak_time", |d| d.peak_time),
+        ("nadir_time", |d| d.nadir_time),
+        ("quiescent_start", |d| d.quiescent_start),
+        ("quiescent_end", |d| d.quiescent_end),
+    ];
+    for (name, value) in times {
+        let values: Vec<CasedBand> = rows.iter().map(|(_, day)| value(day)).collect();
+        columns.extend(cased(name, &values));
     }
     frame(columns)
 }

@@ -73,6 +73,7 @@ pub fn write(report: &ScreenReport, out: &mut dyn Write) -> io::Result<()> {
     )?;
     writeln!(out)?;
     paragraph(out, &summary.statement)?;
+    paragraph(out, &format!("Input: {}.", report.diagnostic_counts))?;
     findings(report, out)?;
     writeln!(out)?;
     paragraph(out, &report.cautions.device)?;
@@ -86,10 +87,12 @@ fn findings(report: &ScreenReport, out: &mut dyn Write) -> io::Result<()> {
     if report.findings.is_empty() {
         return Ok(());
     }
-    writeln!(out)?;
-    writeln!(out, "Findings, most urgent first")?;
     let (judged, open): (Vec<&FindingRow>, Vec<&FindingRow>) =
         report.findings.iter().partition(|f| f.kind != "not-judged");
+    if !judged.is_empty() {
+        writeln!(out)?;
+        writeln!(out, "Findings, most urgent first")?;
+    }
     for finding in judged.iter().take(SHOWN_FINDINGS) {
         let head = format!(
             "{:<8}  {:<6}  {}  {}",
@@ -99,11 +102,7 @@ fn findings(report: &ScreenReport, out: &mut dyn Write) -> io::Result<()> {
             whom(finding)
         );
         writeln!(out, "{}", head.trim_end())?;
-        let rules = match finding.rules.as_slice() {
-            [] => String::new(),
-            rules => format!(" ({})", rules.join(", ")),
-        };
-        indented(out, &format!("{}{rules}", finding.message))?;
+        indented(out, &finding.message)?;
     }
     let mut counts: BTreeMap<(&str, &str), usize> = BTreeMap::new();
     for finding in judged.iter().skip(SHOWN_FINDINGS) {

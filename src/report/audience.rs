@@ -1,6 +1,6 @@
 //! For whom a report is, and in which order persons stand in it.
 
-use super::document::WorkerSection;
+use super::document::{LineSection, WorkerSection};
 
 /// Who reads the report. The planner's holds least and is the default.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -45,4 +45,16 @@ pub(super) fn order_workers(audience: Audience, workers: &mut [WorkerSection]) {
                 .then(a.id.cmp(&b.id))
         }),
     }
+}
+
+/// Clinicians find the physiology in the order of the workers; planners in the order of the lines.
+pub(super) fn ordered_lines(
+    audience: Audience,
+    workers: &[WorkerSection],
+    mut lines: Vec<LineSection>,
+) -> Vec<LineSection> {
+    if audience == Audience::Clinician {
+        lines.sort_by_key(|line| workers.iter().position(|worker| worker.id == line.id));
+    }
+    lines
 }

@@ -6,6 +6,8 @@ use std::collections::BTreeMap;
 
 /// Messages printed per code; the rest is counted.
 const SHOWN_PER_CODE: usize = 20;
+/// Notes printed per code.
+const SHOWN_NOTES: usize = 2;
 
 /// A line of the input with the part that is meant.
 #[derive(Debug, Clone, PartialEq, Eq)]
@@ -37,30 +39,38 @@ pub struct DiagnosticRow {
     pub excerpt: Option<Excerpt>,
 }
 
-/// Rows of the diagnostics, in their order, with repeats of a code beyond the cap counted in one row.
+/// Rows of the diagnostics, what asks for a decision first, with repeats of a code beyond the cap counted in one row.
 pub fn rows(diagnostics: &[Diagnostic]) -> Vec<DiagnosticRow> {
     let mut seen: BTreeMap<(Code, Level), usize> = BTreeMap::new();
     let mut rows = Vec::new();
     for diagnostic in diagnostics {
         let count = seen.entry((diagnostic.code, diagnostic.level)).or_insert(0);
         *count += 1;
-        if *count <= SHOWN_PER_CODE {
+        if *count <= shown(diagnostic.level) {
             rows.push(row(diagnostic));
         }
     }
     for ((code, level), count) in seen {
-        if count > SHOWN_PER_CODE {
+        if count > shown(level) {
             rows.push(DiagnosticRow {
                 id: code.id(),
                 code: code.name(),
                 level: level.to_string(),
                 location: "(more)".to_owned(),
-                message: format!("and {} more: {}", count - SHOWN_PER_CODE, code.about()),
+                message: format!("and {} more: {}", count - shown(level), code.about()),
                 excerpt: None,
             });
         }
     }
+    rows.sort_by_key(|row| row.level == "note");
     rows
+}
+
+fn shown(level: Level) -> usize {
+    match level {
+        Level::Note => SHOWN_NOTES,
+        _ => SHOWN_PER_CODE,
+    }
 }
 
 fn row(diagnostic: &Diagnostic) -> DiagnosticRow {

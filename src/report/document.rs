@@ -30,6 +30,40 @@ impl BandValue {
     }
 }
 
+/// A modelled number that may have two cases: morning daylight seen on the way home, and not.
+///
+/// Where the cases are apart there is no common median, for it would describe nobody.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct CasedBand {
+    /// All members.
+    pub all: BandValue,
+    /// Daylight seen, daylight not seen, where their medians are more than the limit apart.
+    pub cases: Option<[BandValue; 2]>,
+}
+
+impl CasedBand {
+    /// The median that may be written: none where the cases are apart.
+    pub fn median(&self) -> Option<f64> {
+        self.cases.is_none().then_some(self.all.median)
+    }
+
+    /// The entries with the case of each, in words.
+    pub fn entries(&self) -> Vec<(BandValue, Option<&'static str>)> {
+        match self.cases {
+            None => vec![(self.all, None)],
+            Some([seen, not_seen]) => vec![
+                (seen, Some(DAYLIGHT_SEEN)),
+                (not_seen, Some(DAYLIGHT_NOT_SEEN)),
+            ],
+        }
+    }
+}
+
+/// The case of members who see morning daylight.
+pub const DAYLIGHT_SEEN: &str = "if daylight is seen on the way home";
+/// The case of members who do not.
+pub const DAYLIGHT_NOT_SEEN: &str = "if daylight is not seen on the way home";
+
 /// Hours, rounded to a hundredth.
 pub fn hours(value: f64) -> f64 {
     round_to(value, HOUR_DECIMALS)
@@ -165,8 +199,8 @@ pub struct WorkerSection {
     pub shifts: Vec<ShiftRow>,
     /// Recovery windows.
     pub windows: Vec<WindowRow>,
-    /// Register-type measures by name; `None` is not known.
-    pub exposure: Vec<(&'static str, Option<f64>)>,
+    /// Register-type measures: name in data, name in words, value; `None` is not known.
+    pub exposure: Vec<(&'static str, &'static str, Option<f64>)>,
     /// The windows as a figure.
     pub strip: RecoveryStrip,
 }
@@ -245,6 +279,8 @@ pub struct LineSection {
 pub struct LineShiftRow {
     /// RFC 3339 with offset.
     pub start: String,
+    /// Start in words.
+    pub start_text: String,
     /// Sleep in the 24 h before, hours.
     pub sleep_prior_24h: BandValue,
     /// Sleep in the 48 h before, hours.
@@ -277,9 +313,11 @@ pub struct LineWindowRow {
     /// `short`, `uncertain` or `not short`.
     pub sleep_test: &'static str,
     /// Phase displacement of the last main sleep, hours.
-    pub phase_displacement_h: BandValue,
+    ///
+    /// Positive: later in the body's night than usual; none without any sleep in the last 24 h.
+    pub phase_displacement_h: Option<BandValue>,
     /// `CBTmin` displacement at the next duty, hours, positive earlier.
-    pub cbtmin_displacement_h: BandValue,
+    pub cbtmin_displacement_h: CasedBand,
     /// Hours awake in the reference quiescent interval beyond the habitual ones.
     pub quiescent_awake_excess_h: BandValue,
     /// The model rests on an assumed history.
@@ -304,19 +342,19 @@ pub struct DayRow {
     /// Amplitude over that of the habitual day.
     pub amplitude_ratio: BandValue,
     /// Acrophase of the fitted cosine, clock hour; depends on sleep timing.
-    pub acrophase_h: BandValue,
+    pub acrophase_h: CasedBand,
     /// Highest value, nmol/L.
     pub peak: BandValue,
     /// When, clock hour.
-    pub peak_time: BandValue,
+    pub peak_time: CasedBand,
     /// Lowest value, nmol/L.
     pub nadir: BandValue,
     /// When, clock hour.
-    pub nadir_time: BandValue,
+    pub nadir_time: CasedBand,
     /// Quiescent interval begins, clock hour.
-    pub quiescent_start: BandValue,
+    pub quiescent_start: CasedBand,
     /// Quiescent interval ends, clock hour.
-    pub quiescent_end: BandValue,
+    pub quiescent_end: CasedBand,
 }
 
 /// A finding.
@@ -350,6 +388,8 @@ pub struct FindingRow {
     pub rules: Vec<String>,
     /// Sources with marks.
     pub source: String,
+    /// Every place of a finding that occurs more than once, in words.
+    pub places: Vec<String>,
     /// Rows of the input, as data: `ward.csv:192`.
     pub rows: Vec<String>,
     /// Rows of the input, as a person reads them: `rows 192, 193 of ward.csv`.
@@ -380,10 +420,27 @@ pub struct PackRow {
     pub reading: String,
     /// State in which it was seen.
     pub as_seen: String,
+    /// Rules of the same documents that this version does not measure.
+    pub left_out: Vec<String>,
     /// Night definition.
     pub night: String,
-    /// Id, limit and source of its rules.
-    pub rules: Vec<(String, String, String)>,
+    /// Its rules.
+    pub rules: Vec<RuleRow>,
+}
+
+/// A rule of a pack, in words.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct RuleRow {
+    /// Stable id.
+    pub id: String,
+    /// What it asks.
+    pub asks: String,
+    /// Whom it concerns.
+    pub scope: String,
+    /// Derogations that the instrument knows.
+    pub derogations: String,
+    /// Instrument, article, source and mark.
+    pub source: String,
 }
 
 /// A number with unit and source.

@@ -10,6 +10,7 @@ use crate::numeric::rounding::round_to;
 use crate::physiology::{MemberTrack, Simulation};
 use crate::timeline::CivilDay;
 use crate::units::{Minute, minutes_to_hours};
+use std::collections::BTreeSet;
 
 /// Stretches in which at least half of the members sleep.
 fn common_sleep(tracks: &[MemberTrack], from: Minute, to: Minute) -> Vec<(Minute, Minute)> {
@@ -58,26 +59,29 @@ fn work(line: &LineAssessment) -> Vec<(Minute, Minute)> {
         .collect()
 }
 
-/// Median DLMO to ten hours later, cycle by cycle.
+/// Median DLMO to melatonin offset. Where the two daylight cases are apart, both are drawn.
 fn biological_nights(line: &LineAssessment, simulation: &Simulation) -> Vec<(Minute, Minute)> {
     let melatonin = simulation.melatonin;
-    line.estimate
+    let before_cbtmin = |minute: f64| minute - melatonin.onset_before_cbtmin_min;
+    let onsets: BTreeSet<Minute> = line
+        .estimate
         .days
         .iter()
-        .filter_map(|day| day.cbtmin.first())
-        .map(|cbtmin| {
-            let onset = cbtmin.minute.median - melatonin.onset_before_cbtmin_min;
-            (whole(onset), whole(onset + melatonin.duration_min))
+        .flat_map(|day| {
+            let from_cbtmin = day.cbtmin.iter().map(|c| before_cbtmin(c.minute.median));
+            from_cbtmin.chain(day.dlmo.iter().map(|d| d.minute.median))
+        })
+        .map(Minute::nearest)
+        .collect();
+    onsets
+        .into_iter()
+        .map(|onset| {
+            (
+                onset,
+                Minute::nearest(onset.as_f64() + melatonin.duration_min),
+            )
         })
         .collect()
-}
-
-#[expect(
-    clippy::cast_possible_truncation,
-    reason = "minutes of a roster fit an i64 by far"
-)]
-fn whole(minute: f64) -> Minute {
-    Minute(minute.round() as i64)
 }
 
 /// Work, sleep and biological night by date.
@@ -87,14 +91,14 @@ pub(super) fn raster(
     simulation: &Simulation,
     heading: &str,
 ) -> Raster {
-    let days = input.axis.dates();
+    let days = input.axis.rostered_dates();
     let (from, to) = span_of(days);
     let sleep = common_sleep(&simulation.tracks, from, to);
     let (work, nights) = (work(line), biological_nights(line, simulation));
     Raster {
         title: format!("Work, sleep and biological night. {heading}"),
         description: format!(
-            "Double-plotted raster of {} dates: {} duties hatched, modelled sleep of at least half of the members solid, median biological night outlined. The table of days holds the numbers.",
+            "Double-plotted raster of {} dates: {} duties hatched, modelled sleep of at least half of the members solid, median biological night outlined (both where morning daylight seen or not makes more than an hour). The table of days holds the numbers.",
             days.len(),
             line.duties.len()
         ),
@@ -125,7 +129,7 @@ pub(super) fn curve(
     simulation: &Simulation,
     heading: &str,
 ) -> CortisolCurve {
-    let days = input.axis.dates();
+    let days = input.axis.rostered_dates();
     let (from, to) = span_of(days);
     let sleep = common_sleep(&simulation.tracks, from, to);
     CortisolCurve {
@@ -182,7 +186,7 @@ pub(super) fn clock(input: &ReportInput<'_>, line: &LineAssessment, heading: &st
             })
         })
         .collect();
-    let habitual = &line.estimate.habitual.cbtmin_clock_min;
+    let habitual = &line.estimate.habitual_cbtmin_min;
     PhaseClock {
         title: format!("Modelled CBTmin by date on the 24-h clock. {heading}"),
         description: format!(
@@ -190,7 +194,7 @@ pub(super) fn clock(input: &ReportInput<'_>, line: &LineAssessment, heading: &st
             days.len()
         ),
         habitual_h: crate::numeric::circular::wrap(
-            minutes_to_hours(whole(habitual.median).0),
+            minutes_to_hours(Minute::nearest(habitual.median).0),
             24.0,
         ),
         days,

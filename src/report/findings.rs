@@ -2,7 +2,7 @@
 
 use super::document::{FindingRow, hours};
 use super::{Audience, ReportInput, wording, workers};
-use crate::assessment::{Finding, FindingKind, SubjectOf};
+use crate::assessment::{Finding, FindingKind, RecoveryWindow, SubjectOf};
 use crate::source::OriginId;
 
 /// The findings of the assessment for the audience.
@@ -69,7 +69,8 @@ fn row(input: &ReportInput<'_>, finding: &Finding, worker: Option<String>) -> Fi
             .members
             .filter(|_| shows_members)
             .map(|members| (members.hold, members.of)),
-        rules: finding.rules.clone(),
+        rules: finding.rules.iter().map(|rule| rule.id.clone()).collect(),
+        places: wording::places(input.axis, finding),
         source: finding.source.clone(),
         rows: finding
             .rows
@@ -77,8 +78,8 @@ fn row(input: &ReportInput<'_>, finding: &Finding, worker: Option<String>) -> Fi
             .map(|origin| workers::row_text(input, *origin))
             .collect(),
         rows_text: rows_text(input, &finding.rows),
-        occurrences: finding.occurrences,
-        message: wording::message(finding, window, is_eu(input, finding)),
+        occurrences: finding.occurrences.len().max(1),
+        message: message(input, finding, window),
     }
 }
 
@@ -101,11 +102,24 @@ fn rows_text(input: &ReportInput<'_>, rows: &[OriginId]) -> String {
     files.join("; ")
 }
 
+fn message(input: &ReportInput<'_>, finding: &Finding, window: Option<&RecoveryWindow>) -> String {
+    let person = match input.audience {
+        Audience::Planner => "generic adult",
+        Audience::Clinician => "average adult on this roster",
+    };
+    let text = wording::message(finding, window, person);
+    if finding.kind != FindingKind::NotJudged && is_eu(input, finding) {
+        format!("{text}; EU minimum standard; the national law that implements it decides")
+    } else {
+        text
+    }
+}
+
 fn is_eu(input: &ReportInput<'_>, finding: &Finding) -> bool {
     input
         .packs
         .iter()
         .filter(|pack| pack.jurisdiction == "EU")
         .flat_map(|pack| &pack.rules)
-        .any(|rule| finding.rules.contains(&rule.id))
+        .any(|rule| finding.rules.iter().any(|broken| broken.id == rule.id))
 }

@@ -1,17 +1,19 @@
 //! Sections of modelled physiology: the generic adult on a line, or a worker for clinicians.
 
 use super::document::{
-    BandValue, DayRow, HOUR_DECIMALS, LineSection, LineShiftRow, LineWindowRow, NMOL_DECIMALS,
-    SHARE_DECIMALS, hours,
+    BandValue, CasedBand, DAYLIGHT_NOT_SEEN, DAYLIGHT_SEEN, DayRow, HOUR_DECIMALS, LineSection,
+    LineShiftRow, LineWindowRow, NMOL_DECIMALS, SHARE_DECIMALS, hours,
 };
 use super::{Audience, ReportInput, figures, wording};
-use crate::assessment::estimate::{CbtminEstimate, DayEstimate, ShiftEstimate, WindowEstimate};
+use crate::assessment::estimate::{
+    CbtminEstimate, DayEstimate, ShiftEstimate, Spread, WindowEstimate,
+};
 use crate::assessment::{LineAssessment, WorkerAssessment};
 use crate::numeric::quantile::Quantiles;
 use crate::numeric::rounding::round_to;
 use crate::physiology::Simulation;
 use crate::timeline::Axis;
-use crate::units::{Minute, minutes_to_hours};
+use crate::units::{Minute, PhaseShift, minutes_to_hours};
 
 /// One section per line for planners, one per worker for clinicians.
 pub(super) fn sections(input: &ReportInput<'_>) -> Vec<LineSection> {
@@ -48,11 +50,18 @@ fn section(
         .unwrap_or_else(|| "generic adult".to_owned());
     let id = worker.cloned().unwrap_or_else(|| line.line.id.to_string());
     let heading = match worker {
-        Some(name) => name.clone(),
+        Some(name) => {
+            format!("Average adult on the roster of {name}, whose own habits were not used")
+        }
         None => format!(
             "Generic adult on {}, not the person who works it",
             line.line.id
         ),
+    };
+    let person = if worker.is_some() {
+        "average adult"
+    } else {
+        "generic adult"
     };
     let windows = window_rows(input, line, &on_line);
     LineSection {
@@ -76,7 +85,7 @@ fn section(
             .iter()
             .map(|day| day_row(input.axis, day))
             .collect(),
-        evidence: evidence(input, &windows),
+        evidence: evidence(input, &windows, person),
         raster: figures::raster(input, line, simulation, &heading),
         curve: figures::curve(input, line, simulation, &heading),
         clock: figures::clock(input, line, &heading),
@@ -90,9 +99,17 @@ fn banded(q: Quantiles) -> BandValue {
     BandValue::rounded(q, HOUR_DECIMALS)
 }
 
+fn cased(spread: Spread, band: impl Fn(Quantiles) -> BandValue) -> CasedBand {
+    CasedBand {
+        all: band(spread.all),
+        cases: spread.cases.map(|cases| cases.map(band)),
+    }
+}
+
 fn shift_row(axis: &Axis, shift: &ShiftEstimate) -> LineShiftRow {
     LineShiftRow {
         start: wording::stamp(axis, shift.start),
+        start_text: wording::when(axis, shift.start),
         sleep_prior_24h: banded(shift.sleep_prior_24h),
         sleep_prior_48h: banded(shift.sleep_prior_48h),
         awake_at_start_h: banded(shift.awake_at_start_h),
@@ -135,7 +152,6 @@ fn window_row(
     history_assumed: bool,
 ) -> LineWindowRow {
     let shares = window.shares();
-    let sleep = &input.criteria.sleep;
     LineWindowRow {
         start: wording::stamp(input.axis, window.start),
         start_text: wording::when(input.axis, window.start),
@@ -144,15 +160,9 @@ fn window_row(
         total_sleep_h: banded(window.total_sleep_h),
         k24: round_to(shares.k24, SHARE_DECIMALS),
         k48: round_to(shares.k48, SHARE_DECIMALS),
-        sleep_test: if shares.k24 >= sleep.short_from_share.value {
-            "short"
-        } else if shares.k24 >= sleep.uncertain_from_share.value {
-            "uncertain"
-        } else {
-            "not short"
-        },
-        phase_displacement_h: banded(window.phase_displacement_h),
-        cbtmin_displacement_h: banded(window.cbtmin_displacement_h),
+        sleep_test: window.sleep_test(input.criteria).words(),
+        phase_displacement_h: window.phase_displacement_h.map(banded),
+        cbtmin_displacement_h: cased(window.cbtmin_displacement_h, banded),
         quiescent_awake_excess_h: banded(window.quiescent_awake_excess_h),
         history_assumed,
     }
@@ -161,7 +171,7 @@ fn window_row(
 fn day_row(axis: &Axis, day: &DayEstimate) -> DayRow {
     let cortisol = &day.cortisol;
     let nmol = |q| BandValue::rounded(q, NMOL_DECIMALS);
-    let clock = |q| clock_band(axis, q);
+    let clock = |spread| cased(spread, |q| clock_band(axis, q));
     DayRow {
         date: day.date.to_string(),
         cbtmin: day.cbtmin.iter().map(|c| marker(axis, c)).collect(),
@@ -190,15 +200,15 @@ fn marker(axis: &Axis, marker: &CbtminEstimate) -> (BandValue, Option<&'static s
 /// The case of an entry, in words.
 pub(super) fn daylight_case(seen: bool) -> &'static str {
     if seen {
-        "if daylight is seen on the way home"
+        DAYLIGHT_SEEN
     } else {
-        "if daylight is not seen on the way home"
+        DAYLIGHT_NOT_SEEN
     }
 }
 
 /// Instants as clock hours: the median in [0, 24), the band around it unwrapped, so it may run below 0 or above 24.
 pub(super) fn clock_band(axis: &Axis, q: Quantiles) -> BandValue {
-    let whole = whole_minute(q.median);
+    let whole = Minute::nearest(q.median.floor());
     let shown = minutes_to_hours(axis.clock.at(whole)) + (q.median - whole.as_f64()) / 60.0;
     let median = crate::numeric::circular::wrap(shown, 24.0);
     BandValue::rounded(
@@ -211,47 +221,39 @@ pub(super) fn clock_band(axis: &Axis, q: Quantiles) -> BandValue {
     )
 }
 
-#[expect(
-    clippy::cast_possible_truncation,
-    reason = "minutes of a roster fit an i64 by far"
-)]
-fn whole_minute(minute: f64) -> Minute {
-    Minute(minute.floor() as i64)
-}
-
 /// What is worth a word beside the classes: displaced sleep, moved clock, hours awake in the quiescent interval.
-fn evidence(input: &ReportInput<'_>, windows: &[LineWindowRow]) -> Vec<String> {
+///
+/// Windows over 7 days and windows that rest on an assumed history are left out, as in shares.
+fn evidence(input: &ReportInput<'_>, windows: &[LineWindowRow], subject: &str) -> Vec<String> {
     let limits = &input.criteria.evidence;
+    let longest = input.criteria.rest.listed_above.value;
+    let counted: Vec<&LineWindowRow> = windows
+        .iter()
+        .filter(|window| !window.history_assumed && window.hours <= longest)
+        .collect();
     let over = limits.phase_displacement_over.value;
     let tolerance = limits.quiescent_tolerance.value;
     let mut lines = Vec::new();
-    let displaced = windows
+    let displaced = counted
         .iter()
-        .filter(|w| w.phase_displacement_h.median.abs() > over)
+        .filter_map(|w| w.phase_displacement_h)
+        .filter(|band| band.median.abs() > over)
         .count();
     if displaced > 0 {
         lines.push(format!(
             "{displaced} of {} windows end with sleep at an unusual body-clock time (more than {over} h from the habitual phase angle); true of nearly all sleep after nights.",
-            windows.len()
+            counted.len()
         ));
     }
-    let furthest = windows
-        .iter()
-        .map(|w| w.cbtmin_displacement_h.median)
-        .max_by(|a, b| a.abs().total_cmp(&b.abs()));
-    if let Some(furthest) = furthest {
-        lines.push(format!(
-            "Furthest modelled CBTmin at the start of a duty: {} than on habitual days (median; a lower bound of the displacement left).",
-            wording::shift_text(furthest)
-        ));
-    }
-    let awake = windows
+    lines.extend(furthest(&counted));
+    let awake = counted
         .iter()
         .filter(|w| w.quiescent_awake_excess_h.median > tolerance)
         .count();
     if awake > 0 {
         lines.push(format!(
-            "Before {awake} duties the generic adult is awake in the reference quiescent interval for more than {tolerance} h beyond the habitual hours."
+            "Before {} the {subject} is awake in the reference quiescent interval for more than {tolerance} h beyond the habitual hours.",
+            wording::counted(awake, "duty").replace("dutys", "duties")
         ));
     }
     lines.push(
@@ -259,4 +261,32 @@ fn evidence(input: &ReportInput<'_>, windows: &[LineWindowRow]) -> Vec<String> {
             .to_owned(),
     );
     lines
+}
+
+/// The furthest displacement of `CBTmin` at the start of a duty, by case where the cases are apart.
+fn furthest(windows: &[&LineWindowRow]) -> Option<String> {
+    let size = |window: &&&LineWindowRow| {
+        let entries = window.cbtmin_displacement_h.entries();
+        entries
+            .iter()
+            .map(|(band, _)| band.median.abs())
+            .fold(0.0, f64::max)
+    };
+    let window = windows.iter().max_by(|a, b| size(a).total_cmp(&size(b)))?;
+    let said: Vec<String> = window
+        .cbtmin_displacement_h
+        .entries()
+        .iter()
+        .map(|(band, case)| {
+            let shift = PhaseShift::earlier_by(band.median);
+            match case {
+                Some(case) => format!("{shift} {case}"),
+                None => shift.to_string(),
+            }
+        })
+        .collect();
+    Some(format!(
+        "Furthest modelled CBTmin at the start of a duty: {} than on habitual days (median; a lower bound of the displacement left).",
+        said.join(", ")
+    ))
 }

@@ -1,7 +1,9 @@
 //! Sentences of the report: the same condition is worded the same way in every format.
 
-use super::document::MethodRow;
-use crate::assessment::{Finding, FindingCode, RecoveryWindow};
+use super::document::{MethodRow, RuleRow};
+use crate::assessment::finding::BrokenRule;
+use crate::assessment::pack::{Comparison, Rule};
+use crate::assessment::{Finding, FindingCode, FindingKind, RecoveryWindow, rules};
 use crate::timeline::Axis;
 use crate::units::Minute;
 
@@ -47,7 +49,9 @@ pub fn stamp(axis: &Axis, minute: Minute) -> String {
 /// The sentence that stands wherever counts are printed.
 pub fn statement(compressed: usize, windows: usize) -> String {
     const SECOND: &str = "This is not a finding of safety: fatigue, illness and individual differences are not seen.";
-    if compressed == 0 {
+    if windows == 0 {
+        format!("No window was judged. {SECOND}")
+    } else if compressed == 0 {
         format!("No window met this program's criteria. {SECOND}")
     } else {
         format!(
@@ -56,113 +60,203 @@ pub fn statement(compressed: usize, windows: usize) -> String {
     }
 }
 
-/// A displacement in words, never as a bare sign: positive is earlier.
-pub fn shift_text(earlier_h: f64) -> String {
-    let side = if earlier_h < 0.0 { "later" } else { "earlier" };
-    format!("{:.1} h {side}", earlier_h.abs())
+/// A finding in words: what was measured, then which rules it does not meet.
+pub fn message(finding: &Finding, window: Option<&RecoveryWindow>, person: &str) -> String {
+    let mut parts = vec![measured_text(finding, window, person)];
+    parts.extend(rules_text(finding));
+    if finding.code == FindingCode::LongAwake {
+        parts.push("see the caution on driving after nights".to_owned());
+    }
+    if finding.code != FindingCode::RuleNotJudged {
+        parts.extend(finding.remark.clone());
+    }
+    if finding.history_assumed && finding.kind == FindingKind::Model {
+        parts.push("history: assumed".to_owned());
+    }
+    parts.join("; ")
 }
 
-/// A finding in words.
-pub fn message(finding: &Finding, window: Option<&RecoveryWindow>, is_eu: bool) -> String {
+/// What was measured.
+fn measured_text(finding: &Finding, window: Option<&RecoveryWindow>, person: &str) -> String {
     let measured = finding.measured.unwrap_or(0.0);
     let limit = finding.limit.unwrap_or(0.0);
     let repeats = repeats(finding);
-    let mut text = match finding.code {
+    match finding.code {
         FindingCode::CompressedRest => compressed_rest(finding, window),
         FindingCode::CompressedSleep => format!(
-            "generic adult: less than {limit} h of sleep fits into the 24 h before the next duty (median {}){repeats}",
+            "{person}: less than {limit} h of sleep fits into the 24 h before the next duty (median {}){repeats}",
             hours_text(measured)
         ),
         FindingCode::NarrowSleep => format!(
-            "generic adult: sleep before the next duty is close to short (median {} in 24 h){repeats}",
+            "{person}: sleep before the next duty is close to short (median {} in 24 h; short is below {limit} h){repeats}",
             hours_text(measured)
         ),
         FindingCode::LongAwake => format!(
-            "generic adult: awake for {} at the end of the duty (median){repeats}; do not drive home tired: see the driving caution",
+            "{person}, without a nap: awake for {} at the end of the duty (median); told from {limit} h on{repeats}",
             hours_text(measured)
         ),
-        FindingCode::RunOfNights => {
-            format!("{measured:.0} nights in a row; advice has at most {limit:.0}{repeats}")
+        FindingCode::RunOfNights => format!("{measured:.0} nights in a row{repeats}"),
+        FindingCode::RestAfterNights | FindingCode::NarrowRest if finding.unit == "count" => {
+            format!("{} off at a change of duty{repeats}", nights_text(measured))
         }
-        FindingCode::RestAfterNights if finding.unit == "count" => format!(
-            "{} off between nights and the next other duty; advice has {limit:.0}{repeats}",
-            nights_text(measured)
-        ),
-        FindingCode::RestAfterNights => format!(
-            "{} off after nights; advice has {limit:.0} h{repeats}",
-            hours_text(measured)
-        ),
-        FindingCode::NarrowRest if finding.unit == "count" => format!(
-            "{} off at a change of duty; advice has {limit:.0}{repeats}",
-            nights_text(measured)
-        ),
-        FindingCode::NarrowRest => format!(
-            "{} between duties; advice has {limit:.0} h{repeats}",
-            hours_text(measured)
-        ),
-        FindingCode::DutyLength => format!(
-            "duty of {}; advice has at most {limit:.0} h{repeats}",
-            hours_text(measured)
-        ),
-        FindingCode::BreakLength => {
-            format!("break of {measured:.0} min; the law has {limit:.0} min{repeats}")
+        FindingCode::RestAfterNights => {
+            format!("{} off after nights{repeats}", hours_text(measured))
         }
-        FindingCode::PeriodLimit => period_limit(finding),
+        FindingCode::NarrowRest => format!("{} between duties{repeats}", hours_text(measured)),
+        FindingCode::DutyLength => {
+            let night = finding
+                .rules
+                .iter()
+                .any(|rule| rule.metric == "night_duty_h");
+            let noun = if night { "night duty" } else { "duty" };
+            format!("{noun} of {}{repeats}", hours_text(measured))
+        }
+        FindingCode::BreakLength => format!("break of {measured:.0} min{repeats}"),
+        FindingCode::PeriodLimit if finding.unit == "h" => {
+            format!("{} in the period{repeats}", hours_text(measured))
+        }
+        FindingCode::PeriodLimit => format!("{measured:.0} in the period{repeats}"),
         FindingCode::RuleNotJudged => format!(
             "not judged: {}",
             finding.remark.as_deref().unwrap_or("data are missing")
         ),
-    };
-    if let (Some(remark), false) = (&finding.remark, finding.code == FindingCode::RuleNotJudged) {
-        text.push_str("; ");
-        text.push_str(remark);
     }
-    if finding.history_assumed && finding.kind == crate::assessment::FindingKind::Model {
-        text.push_str("; history: assumed");
-    }
-    if is_eu && finding.code != FindingCode::RuleNotJudged {
-        text.push_str("; EU minimum standard; the national law that implements it decides");
-    }
-    text
 }
 
 fn compressed_rest(finding: &Finding, window: Option<&RecoveryWindow>) -> String {
     let gap = window.map_or(finding.measured.unwrap_or(0.0), RecoveryWindow::hours);
-    let limit = finding.limit.unwrap_or(0.0);
     let inside = finding
         .measured
         .filter(|measured| (gap - measured).abs() > 0.01)
         .map(|measured| {
-            format!(
-                ", of which {} in the 24 h from the start of the duty before",
-                hours_text(measured)
-            )
+            let rest = hours_text(measured);
+            if measured < gap {
+                format!(", of which {rest} in the 24 h from the start of the duty before")
+            } else {
+                format!(
+                    "; the longest rest in the 24 h from the start of the duty before is {rest}"
+                )
+            }
         })
         .unwrap_or_default();
-    let by = match finding.kind {
-        crate::assessment::FindingKind::Law => "the law has",
-        _ => "advice has",
+    let own = if finding.rules.is_empty() {
+        ", below 11 h"
+    } else {
+        ""
     };
-    format!(
-        "{} between duties{inside}; {by} {limit:.0} h",
-        hours_text(gap)
-    )
+    format!("{} between duties{inside}{own}", hours_text(gap))
 }
 
-fn period_limit(finding: &Finding) -> String {
-    let measured = finding.measured.unwrap_or(0.0);
-    let limit = finding.limit.unwrap_or(0.0);
-    match finding.unit.as_str() {
-        "h" => format!(
-            "{} in the period; the limit is {limit:.0} h{}",
-            hours_text(measured),
-            repeats(finding)
-        ),
-        unit => format!(
-            "{measured:.0} in the period; the limit is {limit:.0} ({unit}){}",
-            repeats(finding)
-        ),
+/// Which rules are not met: `law not met: at least 11 h (uk-daily-rest)`, `advice: at least 11 h (garde-gap, hse-gap), at least 16 h (ka-gap)`.
+fn rules_text(finding: &Finding) -> Vec<String> {
+    if finding.code == FindingCode::RuleNotJudged {
+        return Vec::new();
     }
+    let parts = [
+        ("law not met", true, false),
+        ("law, only within a derogation", true, true),
+        ("advice", false, false),
+    ];
+    parts
+        .into_iter()
+        .filter_map(|(head, is_law, within_floor)| {
+            let rules: Vec<&BrokenRule> = finding
+                .rules
+                .iter()
+                .filter(|r| r.is_law == is_law && (!is_law || r.within_floor == within_floor))
+                .collect();
+            (!rules.is_empty()).then(|| format!("{head}: {}", limits_text(&rules)))
+        })
+        .collect()
+}
+
+/// Limits with the rules that set them, equal limits together.
+fn limits_text(rules: &[&BrokenRule]) -> String {
+    let mut limits: Vec<(String, Vec<&str>)> = Vec::new();
+    for rule in rules {
+        let limit = limit_text(rule.op, rule.limit, &rule.unit);
+        match limits.iter_mut().find(|(text, _)| *text == limit) {
+            Some((_, ids)) => ids.push(&rule.id),
+            None => limits.push((limit, vec![&rule.id])),
+        }
+    }
+    limits
+        .iter()
+        .map(|(limit, ids)| format!("{limit} ({})", ids.join(", ")))
+        .collect::<Vec<_>>()
+        .join(", ")
+}
+
+/// `at least 11 h`.
+fn limit_text(op: Comparison, limit: f64, unit: &str) -> String {
+    let side = match op {
+        Comparison::AtLeast => "at least",
+        Comparison::AtMost => "at most",
+        Comparison::Equal => "exactly",
+    };
+    match unit {
+        "count" => format!("{side} {limit}"),
+        unit => format!("{side} {limit} {unit}"),
+    }
+}
+
+/// What a rule of a pack asks, in words.
+pub fn rule_row(rule: &Rule) -> RuleRow {
+    let measure = rules::KINDS
+        .iter()
+        .find(|kind| kind.metric == rule.metric)
+        .map_or_else(
+            || rule.metric.replace("duty.", "").replace(['_', '.'], " "),
+            |kind| kind.about.to_owned(),
+        );
+    let window = rule.window.as_ref().map_or_else(String::new, |window| {
+        let unit = if window.unit == "d" { "days" } else { "h" };
+        match window.align.as_str() {
+            "from-duty-start" => {
+                format!(", in the {} {unit} from the start of each duty", window.len)
+            }
+            "period" => format!(", in each {} {unit}", window.len),
+            other => format!(", in {} {unit} ({other})", window.len),
+        }
+    });
+    let reference = rule
+        .reference
+        .as_ref()
+        .filter(|reference| reference.len > 0)
+        .map_or_else(String::new, |r| format!(", over {} {}s", r.len, r.unit));
+    let above = rule
+        .work_h_above
+        .map_or_else(String::new, |hours| format!(", for duties over {hours} h"));
+    let alternative = if rule.any_of.is_some() {
+        "; one of several forms is enough"
+    } else {
+        ""
+    };
+    RuleRow {
+        id: rule.id.clone(),
+        asks: format!(
+            "{measure}: {}{window}{reference}{above}{alternative}",
+            limit_text(rule.op, rule.value, &rule.unit)
+        ),
+        scope: rule.scope.clone(),
+        derogations: rule.derogations.join(", "),
+        source: format!("{}; {}", rule.citation(), rule.source),
+    }
+}
+
+/// The places of a finding that occurs more than once: `Mon 09 Mar 19:30 12 h 00`.
+pub fn places(axis: &Axis, finding: &Finding) -> Vec<String> {
+    if finding.occurrences.len() < 2 {
+        return Vec::new();
+    }
+    finding
+        .occurrences
+        .iter()
+        .map(|place| match finding.unit.as_str() {
+            "h" => format!("{} {}", when(axis, place.start), hours_text(place.measured)),
+            _ => format!("{} {:.0}", when(axis, place.start), place.measured),
+        })
+        .collect()
 }
 
 fn nights_text(nights: f64) -> String {
@@ -175,10 +269,9 @@ fn nights_text(nights: f64) -> String {
 }
 
 fn repeats(finding: &Finding) -> String {
-    if finding.occurrences > 1 {
-        format!(" (worst of {} occurrences)", finding.occurrences)
-    } else {
-        String::new()
+    match finding.occurrences.len() {
+        0 | 1 => String::new(),
+        count => format!(" (worst of {count} occurrences)"),
     }
 }
 

@@ -116,7 +116,8 @@ fn window_row(
 /// For planners a reason that rests on the model only points to the line.
 fn reasons(audience: Audience, worker: &WorkerAssessment, window: &RecoveryWindow) -> Vec<String> {
     let mut reasons: Vec<String> = Vec::new();
-    for reason in &window.reasons {
+    let told = |reason: &&Reason| !(window.history_assumed && reason.is_model());
+    for reason in window.reasons.iter().filter(told) {
         let text = if reason.is_model() && audience == Audience::Planner {
             format!("see {}", worker.line)
         } else {
@@ -124,8 +125,8 @@ fn reasons(audience: Audience, worker: &WorkerAssessment, window: &RecoveryWindo
         };
         reasons.push(text);
     }
-    if window.reasons.contains(&Reason::GapBelowLimit) && window.interrupted {
-        reasons.push("standby or sleep-in inside".to_owned());
+    if window.interrupted {
+        reasons.push("standby or sleep-in inside: sleep not judged".to_owned());
     }
     if window.class == WindowClass::NotJudged {
         reasons.push("a date of the window could not be read".to_owned());
@@ -172,25 +173,66 @@ fn strip(name: &str, worker: &WorkerAssessment, windows: &[WindowRow]) -> Recove
     }
 }
 
-fn exposure(exposure: &Exposure) -> Vec<(&'static str, Option<f64>)> {
+fn exposure(exposure: &Exposure) -> Vec<(&'static str, &'static str, Option<f64>)> {
     let count = |value: usize| u32::try_from(value).ok().map(f64::from);
     vec![
-        ("duties", count(exposure.duties)),
-        ("duty_h", Some(hours(exposure.duty_h))),
-        ("nights", count(exposure.nights)),
-        ("early", count(exposure.early)),
-        ("evenings", count(exposure.evenings)),
-        ("days", count(exposure.days)),
-        ("night_h", Some(hours(exposure.night_h))),
-        ("quick_returns", count(exposure.quick_returns)),
+        ("duties", "duties", count(exposure.duties)),
+        ("duty_h", "hours on duty", Some(hours(exposure.duty_h))),
+        (
+            "nights",
+            "night duties (at least 3 h in 23:00-06:00)",
+            count(exposure.nights),
+        ),
+        (
+            "early",
+            "early duties (start 03:00 to before 06:00)",
+            count(exposure.early),
+        ),
+        (
+            "evenings",
+            "evening duties (start from 12:00, end after 18:00)",
+            count(exposure.evenings),
+        ),
+        ("days", "day duties", count(exposure.days)),
+        (
+            "night_h",
+            "hours on duty between 23:00 and 06:00",
+            Some(hours(exposure.night_h)),
+        ),
+        (
+            "quick_returns",
+            "quick returns (gap under 11 h)",
+            count(exposure.quick_returns),
+        ),
         (
             "quick_returns_inclusive",
+            "gaps of 11 h or less",
             count(exposure.quick_returns_inclusive),
         ),
-        ("longest_night_spell", count(exposure.longest_night_spell)),
-        ("longest_run_of_days", count(exposure.longest_run_of_days)),
-        ("long_duties", count(exposure.long_duties)),
-        ("shortest_gap_h", exposure.shortest_gap_h.map(hours)),
-        ("dates_seen", count(exposure.dates_seen)),
+        (
+            "longest_night_spell",
+            "longest run of night duties",
+            count(exposure.longest_night_spell),
+        ),
+        (
+            "longest_run_of_days",
+            "most dates in a row with a start",
+            count(exposure.longest_run_of_days),
+        ),
+        (
+            "long_duties",
+            "duties of 12 h or more",
+            count(exposure.long_duties),
+        ),
+        (
+            "shortest_gap_h",
+            "shortest gap, h",
+            exposure.shortest_gap_h.map(hours),
+        ),
+        (
+            "dates_seen",
+            "dates from first to last duty",
+            count(exposure.dates_seen),
+        ),
     ]
 }

@@ -59,14 +59,6 @@ impl CivilClock {
         let index = self.steps.partition_point(|(from, _)| *from <= minute);
         minute.0 + self.steps[index.max(1) - 1].1
     }
-
-    /// Does the clock change between the two minutes?
-    pub fn changes_between(&self, from: Minute, to: Minute) -> bool {
-        self.steps
-            .iter()
-            .skip(1)
-            .any(|(at, _)| from < *at && *at <= to)
-    }
 }
 
 fn offset_min(zone: Tz, instant: DateTime<Utc>) -> i64 {
@@ -186,7 +178,5 @@ mod tests {
         // 01:00 UTC on the 29th is minute 1500.
         assert_eq!(clock.at(Minute(1499)), 1499);
         assert_eq!(clock.at(Minute(1500)), 1560);
-        assert!(clock.changes_between(Minute(1400), Minute(1600)));
-        assert!(!clock.changes_between(Minute(0), Minute(1400)));
     }
 }

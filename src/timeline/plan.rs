@@ -79,10 +79,10 @@ impl Around {
         let personal_before = personal_min(timeline, before, commute_min);
         let personal_after = personal_min(timeline, after, commute_min);
         Self {
-            leave_home: round_up(duty.start.as_f64() - commute_min - 0.5),
-            arrive_home: round_up(duty.end.as_f64() + commute_min - 0.5),
-            sleep_from: round_up(duty.end.as_f64() + commute_min + personal_after),
-            alarm: round_up(duty.start.as_f64() - commute_min - personal_before),
+            leave_home: Minute::from_which(duty.start.as_f64() - commute_min - 0.5),
+            arrive_home: Minute::from_which(duty.end.as_f64() + commute_min - 0.5),
+            sleep_from: Minute::from_which(duty.end.as_f64() + commute_min + personal_after),
+            alarm: Minute::from_which(duty.start.as_f64() - commute_min - personal_before),
         }
     }
 }
@@ -100,14 +100,6 @@ fn personal_min(timeline: &Timeline, gap: Option<i64>, commute_min: f64) -> f64 
             cap.min(timeline.habits.personal_share * at_home)
         }
     }
-}
-
-#[expect(
-    clippy::cast_possible_truncation,
-    reason = "minutes of a roster fit an i64 by far"
-)]
-fn round_up(minutes: f64) -> Minute {
-    Minute((minutes - 1e-6).ceil() as i64)
 }
 
 fn edges(timeline: &Timeline, around: &[Around], start: Minute) -> Vec<Minute> {

@@ -101,16 +101,36 @@ fn a_late_and_an_early_shift_make_the_only_compressed_window_and_the_only_priori
 fn an_undisturbed_day_has_the_published_phase_and_cortisol() {
     let plain = ("08:00", "16:00");
     let report = report(&office(plain, plain), "Europe/London");
-    // The Sunday between the two weeks.
+    // The days off between the two weeks, with the night before them undisturbed: the Sunday.
     let day = &report.lines[0].days[6];
     assert_eq!(day.date, "2026-01-11");
+    // Every date of an ordinary fortnight has one CBTmin, one DLMO and a nadir in the night, with bands of hours, not of days.
+    for day in &report.lines[0].days {
+        assert_eq!((day.cbtmin.len(), day.dlmo.len()), (1, 1), "{}", day.date);
+        let nadir = day.nadir_time.all;
+        let around_midnight = (nadir.median + 12.0) % 24.0 - 12.0;
+        assert!(
+            (-3.0..4.0).contains(&around_midnight),
+            "{} {nadir:?}",
+            day.date
+        );
+        for band in [
+            nadir,
+            day.peak_time.all,
+            day.quiescent_start.all,
+            day.dlmo[0].0,
+        ] {
+            let width = band.p95 - band.p05;
+            assert!(width > 0.0 && width < 8.0, "{} {band:?}", day.date);
+        }
+    }
     let within = |what: &str, found: f64, low: f64, high: f64| {
         assert!((low..=high).contains(&found), "{what} at {found}");
     };
     within("CBTmin", day.cbtmin[0].0.median, 2.5, 4.5);
     within("DLMO", day.dlmo[0].0.median, 19.5, 21.5);
-    within("peak", day.peak_time.median, 7.75, 8.75);
-    let nadir = (day.nadir_time.median + 12.0) % 24.0 - 12.0;
+    within("peak", day.peak_time.all.median, 7.75, 8.75);
+    let nadir = (day.nadir_time.all.median + 12.0) % 24.0 - 12.0;
     within("nadir", nadir, -1.0, 1.25);
 }
 

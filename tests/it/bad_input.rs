@@ -37,7 +37,7 @@ fn a_missing_column_is_named_with_the_ones_found() {
             "roster.csv:1:1",
             "C18",
             "no column end",
-            "did you mean \"ende\"?",
+            "rename \"ende\" to end",
         ],
     );
 }
@@ -296,4 +296,148 @@ fn a_broken_workbook_is_refused() {
     );
     assert_eq!(code, 3, "{text}");
     assert!(text.contains("roster.xlsx: fatal F01"));
+}
+
+#[test]
+fn rows_are_cited_alike_whatever_the_line_ends() {
+    let csv = "worker,start,end\n\nA1,2026-03-09T14:00,2026-03-09T22:00\nA1,2026-03-10T06:00,2026-03-10T14:00\n";
+    let rows = |test: &str, text: String| {
+        let path = file(test, "roster.csv", text);
+        let output = run(&[
+            "screen",
+            path.to_str().unwrap(),
+            "--zone",
+            "UTC",
+            "--members",
+            "8",
+            "--format",
+            "json",
+        ]);
+        let result: Value = serde_json::from_str(&results(&output)).unwrap();
+        result["findings"][0]["rows"].clone()
+    };
+    let plain = rows("line-feed", csv.to_owned());
+    assert_eq!(plain, serde_json::json!(["roster.csv:3", "roster.csv:4"]));
+    assert_eq!(rows("carriage-return", csv.replace('\n', "\r\n")), plain);
+}
+
+#[test]
+fn rows_are_cited_from_the_file_they_stand_in_when_another_cannot_be_read() {
+    let path = file(
+        "second-file",
+        "good.csv",
+        "worker,start,end\nA1,2026-03-09T14:00,2026-03-09T22:00\nA1,2026-03-10T06:00,2026-03-10T14:00\n",
+    );
+    let output = run(&[
+        "screen",
+        "missing.csv",
+        path.to_str().unwrap(),
+        "--zone",
+        "UTC",
+        "--members",
+        "8",
+        "--allow-partial",
+        "--format",
+        "json",
+    ]);
+    assert!(output.status.success(), "{}", messages(&output));
+    let result: Value = serde_json::from_str(&results(&output)).unwrap();
+    assert_eq!(result["findings"][0]["rows"][0], "good.csv:2");
+}
+
+#[test]
+fn leave_needs_no_times_and_may_last_for_weeks() {
+    let csv = "worker,date,start,end,kind\nA1,2026-03-09,08:00,16:00,work\nA1,2026-03-10,,,leave\nA1,2026-03-11,,,sick\nA1,2026-03-16,08:00,16:00,work\n";
+    let (code, text) = screened("leave", "roster.csv", csv, LONDON);
+    assert_eq!(code, 0, "{text}");
+    let csv = "worker,start,end,kind\nA1,2026-03-09T08:00,2026-03-09T16:00,work\nA1,2026-03-10T00:00,2026-03-24T00:00,leave\n";
+    let (code, text) = screened("long-leave", "roster.csv", csv, LONDON);
+    assert_eq!(code, 0, "{text}");
+}
+
+#[test]
+fn a_slip_in_the_year_is_refused_with_its_row() {
+    check(
+        "slip",
+        format!("worker,start,end\n{GOOD}A1,2062-03-10T08:00,2062-03-10T16:00\n"),
+        LONDON,
+        &["roster.csv:4:4 (start): fatal D10", "36 years"],
+    );
+    check(
+        "far-offset",
+        "worker,start,end\nA1,9999-01-01T08:00Z,9999-01-01T16:00Z\n",
+        LONDON,
+        &["D09"],
+    );
+}
+
+#[test]
+fn dates_that_leave_nothing_are_told() {
+    check(
+        "no-dates",
+        format!("worker,start,end\n{GOOD}"),
+        &["--zone", "UTC", "--from", "2027-01-01"],
+        &["D11", "no shift lies between"],
+    );
+}
+
+#[test]
+fn columns_and_headers_that_are_nearly_right_are_named() {
+    let (code, text) = screened(
+        "near-column",
+        "roster.csv",
+        "worker,start,end,brk_min\nA1,2026-03-09T08:00,2026-03-09T16:00,30\n",
+        LONDON,
+    );
+    assert_eq!(code, 0, "{text}");
+    assert!(
+        text.contains("warning C11 columns left out: brk_min (did you mean break_min?)"),
+        "{text}"
+    );
+    check(
+        "no-date",
+        "worker,datum,start,end\nA1,2026-03-09,08:00,16:00\n",
+        LONDON,
+        &["no column date: start holds times of day only"],
+    );
+}
+
+#[test]
+fn names_that_nearly_agree_are_told_with_their_rows() {
+    let (_, text) = screened(
+        "twins",
+        "roster.csv",
+        "worker,start,end\nMary,2026-03-09T07:00,2026-03-09T15:00\nmary,2026-03-09T22:00,2026-03-10T06:00\n",
+        LONDON,
+    );
+    assert!(
+        text.contains("\"Mary\" (row 2) and \"mary\" (row 3) differ only by case or spaces"),
+        "{text}"
+    );
+}
+
+#[test]
+fn a_derogation_that_no_pack_knows_is_refused() {
+    let site = file("bad-site", "site.toml", "derogations = [\"banana\"]\n");
+    let roster = file(
+        "bad-site-roster",
+        "roster.csv",
+        format!("worker,start,end\n{GOOD}"),
+    );
+    let output = run(&[
+        "screen",
+        roster.to_str().unwrap(),
+        "--zone",
+        "UTC",
+        "--rules",
+        "uk-wtr",
+        "--site",
+        site.to_str().unwrap(),
+    ]);
+    assert_eq!(output.status.code(), Some(2));
+    assert!(
+        messages(&output).contains("reg22-shift-changeover"),
+        "{}",
+        messages(&output)
+    );
 }

@@ -101,9 +101,9 @@ fn rests_over_a_clock_change_are_elapsed_hours() {
             report.workers[0]
                 .exposure
                 .iter()
-                .find(|(name, _)| *name == "quick_returns")
+                .find(|(name, ..)| *name == "quick_returns")
                 .unwrap()
-                .1,
+                .2,
         )
     };
     let spring = rest(
@@ -196,4 +196,42 @@ fn hours_inside_night_windows_agree_with_the_edge_vectors() {
         );
         assert_eq!(shift.class, class, "{start}");
     }
+}
+
+/// Habits follow the clock: after a clock change a day worker is as displaced as one in a zone without changes.
+#[test]
+fn a_clock_change_alone_displaces_nobody() {
+    let first = chrono::NaiveDate::from_ymd_opt(2026, 3, 9).unwrap();
+    let rows: Vec<String> = (0..42)
+        .filter(|day| day % 7 < 5)
+        .map(|day| format!("A,{},08:00,16:00", first + chrono::Days::new(day)))
+        .collect();
+    let csv = format!("worker,date,start,end\n{}\n", rows.join("\n"));
+    let last = |zone: &str| {
+        let report = crate::rosters::report(&csv, zone);
+        let windows = &report.lines[0].windows;
+        windows[windows.len() - 1].cbtmin_displacement_h.all.median
+    };
+    let (london, utc) = (last("Europe/London"), last("UTC"));
+    assert!((london - utc).abs() < 0.15, "London {london}, UTC {utc}");
+}
+
+#[test]
+fn an_end_on_the_next_date_is_not_held_against_the_change_on_the_first() {
+    // The clocks of London changed at 01:00 on the 29th; the duty ends at 01:30 on the 30th.
+    let read = read(
+        "worker,date,start,end\nA,2026-03-29,22:00,01:30\n",
+        "Europe/London",
+    );
+    assert!(read.diagnostics.iter().all(|d| d.code != Code::ClockGap));
+    let shift = &read.roster.unwrap().shifts[0];
+    assert_eq!((shift.end - shift.start).num_minutes(), 210);
+}
+
+#[test]
+fn a_zone_given_fills_rows_without_one_and_never_overrides_the_file() {
+    let csv = "worker,start,end,zone\nA,2026-06-01T22:00,2026-06-02T06:00,America/New_York\n";
+    let report = crate::rosters::report(csv, "Europe/London");
+    assert_eq!(report.provenance.zone, "America/New_York");
+    assert!((report.workers[0].shifts[0].night_h - 7.0).abs() < 1e-9);
 }

@@ -19,3 +19,5 @@ mod reference;
 mod rosters;
 mod rules;
 mod scratch;
+#[cfg(feature = "xlsx")]
+mod workbook;

@@ -137,3 +137,36 @@ fn one_thread_and_two_threads_give_the_same_bytes() {
     assert!(one == two, "one thread and two differ");
     assert!(two == again, "two runs differ");
 }
+
+#[test]
+fn a_clinician_report_is_never_written_over_a_planner_one() {
+    let roster = file("audiences", "roster.csv", ROSTER);
+    let out = folder("audiences-out").join("report");
+    assert!(screen_into(&roster, &out, &[]).status.success());
+    let refused = screen_into(&roster, &out, &["--force", "--audience", "clinician"]);
+    assert_eq!(refused.status.code(), Some(2));
+    assert!(messages(&refused).contains("another audience"));
+}
+
+#[cfg(target_os = "linux")]
+#[test]
+fn messages_that_nobody_can_read_do_not_stop_the_work() {
+    let roster = file("deaf", "roster.csv", ROSTER);
+    let out = folder("deaf-out").join("report");
+    let status = Command::new(env!("CARGO_BIN_EXE_acroshift"))
+        .arg("screen")
+        .arg(&roster)
+        .args(["--zone", "UTC", "--members", "8", "--out"])
+        .arg(&out)
+        .stderr(
+            std::fs::OpenOptions::new()
+                .write(true)
+                .open("/dev/full")
+                .unwrap(),
+        )
+        .stdout(std::process::Stdio::null())
+        .status()
+        .unwrap();
+    assert_eq!(status.code(), Some(0));
+    assert!(out.join("result.json").exists());
+}

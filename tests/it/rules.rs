@@ -242,3 +242,173 @@ fn findings_of_the_directive_defer_to_national_law() {
         found.message
     );
 }
+
+/// A period that the roster does not hold completely accuses nobody, whichever form of weekly rest is asked.
+#[test]
+fn weekly_rest_on_a_short_roster_is_not_judged() {
+    let codes = [('O', "08:00", "16:00")];
+    for pack in ["uk-wtr", "eu-wtd"] {
+        let seven = crate::rosters::pattern("O", 1, &codes);
+        let report = report_with(&seven, "UTC", &screening(&[pack]));
+        assert!(report.findings.iter().all(|f| f.kind != "law"), "{pack}");
+        let weekly: Vec<_> = report
+            .findings
+            .iter()
+            .filter(|f| f.kind == "not-judged" && f.rules[0].contains("weekly-rest"))
+            .collect();
+        assert!(weekly.len() >= 2, "{pack}: {weekly:?}");
+    }
+}
+
+/// 47.5 h a week from Monday to Friday is 47.5 h, however the reference period lies.
+#[test]
+fn averages_do_not_depend_on_where_the_period_ends() {
+    let codes = [('O', "08:00", "17:30")];
+    let csv = crate::rosters::pattern("OOOOO..", 18, &codes);
+    for pack in ["uk-wtr", "eu-wtd"] {
+        let report = report_with(&csv, "UTC", &screening(&[pack]));
+        assert!(
+            report.findings.iter().all(|f| f.kind != "law"),
+            "{pack}: {:?}",
+            report.findings
+        );
+    }
+}
+
+/// An advice that is not met and sleep that is short are two things: the advice never reaches priority through the sleep.
+#[test]
+fn short_sleep_does_not_lift_a_softer_advice() {
+    let mut nights = screening(&["adv-review"]);
+    nights.site.commute_min = Some(185.0);
+    let csv = crate::rosters::pattern(
+        "DDD....NNNN...",
+        4,
+        &[('D', "07:00", "19:00"), ('N', "19:00", "07:00")],
+    );
+    let report = report_with(&csv, "UTC", &nights);
+    let advice: Vec<_> = report
+        .findings
+        .iter()
+        .filter(|f| f.kind == "advice")
+        .collect();
+    assert!(!advice.is_empty());
+    assert!(
+        advice.iter().all(|f| f.attention == Attention::Note),
+        "{advice:?}"
+    );
+    let sleep = finding(&report, "compressed-sleep").unwrap();
+    assert_eq!(
+        (sleep.kind, sleep.attention, &sleep.worker),
+        ("model", Attention::Review, &None)
+    );
+}
+
+/// With advice alone the 11-h criterion is what is shown, in hours, whatever the order of the packs.
+#[test]
+fn a_gap_below_eleven_hours_is_measured_against_eleven_hours() {
+    for packs in [
+        &["adv-hse"][..],
+        &["adv-review"],
+        &["adv-review", "adv-nordic"],
+    ] {
+        let report = two(
+            ("2026-01-05T14:00", "2026-01-05T22:00"),
+            ("2026-01-06T06:00", "2026-01-06T14:00"),
+            packs,
+        );
+        let found = finding(&report, "compressed-rest").unwrap();
+        assert_eq!(
+            (found.measured, found.limit, found.unit.as_str()),
+            (Some(8.0), Some(11.0), "h")
+        );
+        assert_eq!(found.attention, Attention::Review, "8 h is not under 8 h");
+    }
+}
+
+/// UK reg 12: work over 6 h; a pause of a split duty is a break.
+#[test]
+fn breaks_count_pauses_and_the_limit_is_on_work() {
+    let breaks = |rows: &str| {
+        let csv = format!("worker,start,end,break_min\n{rows}");
+        let report = report_with(&csv, "UTC", &screening(&["uk-wtr"]));
+        report.findings.iter().any(|f| f.code == "break-length")
+    };
+    assert!(breaks("A,2026-01-05T08:00,2026-01-05T16:00,10\n"));
+    assert!(!breaks("A,2026-01-05T08:00,2026-01-05T16:00,20\n"));
+    assert!(!breaks(
+        "A,2026-01-05T08:00,2026-01-05T12:00,0\nA,2026-01-05T13:00,2026-01-05T17:00,0\n"
+    ));
+    assert!(!breaks("A,2026-01-05T06:00,2026-01-05T12:15,15\n"));
+}
+
+/// A duty of 16 h leaves at most 8 h of its 24: judged even when nothing is known of what follows.
+#[test]
+fn a_last_duty_too_long_for_its_daily_rest_is_found() {
+    let csv = "worker,start,end\nA,2026-01-05T07:00,2026-01-05T23:00\n";
+    let report = report_with(csv, "UTC", &screening(&["uk-wtr"]));
+    let found = report.findings.iter().find(|f| f.kind == "law").unwrap();
+    assert_eq!((found.measured, found.limit), (Some(8.0), Some(11.0)));
+}
+
+/// A worker who joins late is not averaged over weeks before the first duty.
+#[test]
+fn averages_of_joiners_begin_with_them() {
+    let office = crate::rosters::pattern("OOOOO..", 18, &[('O', "08:00", "16:00")]);
+    let late: Vec<String> = office
+        .lines()
+        .skip(1)
+        .skip(14 * 5)
+        .map(|row| row.replace('P', "Q").replace("16:00", "20:00"))
+        .collect();
+    let report = report_with(
+        &format!("{office}{}\n", late.join("\n")),
+        "UTC",
+        &screening(&["uk-wtr"]),
+    );
+    let open = report
+        .findings
+        .iter()
+        .find(|f| f.rules == ["uk-week"])
+        .unwrap();
+    assert_eq!(open.kind, "not-judged");
+    assert!(
+        open.message.contains("of 17 weeks seen"),
+        "{}",
+        open.message
+    );
+}
+
+/// One worker's lost row takes nothing from the line that others share.
+#[test]
+fn findings_of_a_line_do_not_depend_on_who_comes_first() {
+    let nights = |name: &str| {
+        crate::rosters::pattern(
+            "DDD....NNNN...",
+            4,
+            &[('D', "07:00", "19:00"), ('N', "19:00", "07:00")],
+        )
+        .lines()
+        .skip(1)
+        .map(|row| row.replacen('P', name, 1) + "\n")
+        .collect::<Vec<_>>()
+        .concat()
+    };
+    let lines = |broken: &str| {
+        let csv = format!(
+            "worker,date,start,end\n{}{}{broken},2026-01-20,soon,07:00\n",
+            nights("A"),
+            nights("B")
+        );
+        let mut far = screening(&["eu-wtd"]);
+        far.site.commute_min = Some(185.0);
+        let report = report_with(&csv, "UTC", &far);
+        report
+            .findings
+            .iter()
+            .filter(|f| f.kind == "model")
+            .map(|f| f.message.clone())
+            .collect::<Vec<_>>()
+    };
+    assert_eq!(lines("A"), lines("B"));
+    assert!(!lines("A").is_empty());
+}

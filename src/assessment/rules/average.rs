@@ -9,15 +9,16 @@
 //! # Example
 //! 4 weeks of 40 h in a reference period of 17 weeks are not judged; the value so far is 40 h a week.
 //! # Not covered
-//! Excluded days (leave, sickness) and opt-outs, which the roster does not show.
+//! Less than a week; excluded days (leave, sickness) and opt-outs, which the roster does not show.
 
 use super::{Measure, Rule, RuleKind, SO_FAR, Subject};
 use crate::assessment::duties::Duty;
 use crate::assessment::pack::ReferencePeriod;
+use crate::timeline::CivilDay;
 use crate::units::{MINUTES_PER_DAY, Minute};
 
-/// Days of an average month, 365.2425 / 12.
-const DAYS_PER_MONTH: f64 = 30.44;
+/// Weeks of an average month, 365.2425 / 12 / 7.
+const WEEKS_PER_MONTH: f64 = 4.348;
 
 /// Hours a week.
 pub(super) const WEEK: RuleKind = RuleKind {
@@ -70,9 +71,13 @@ fn average(
     mean: impl Fn(f64, f64) -> f64,
     unit: &str,
 ) -> Option<Measure> {
-    let dates = subject.axis.rostered_dates();
+    let dates = dates_of_worker(subject)?;
     let (first, last) = (dates.first()?, dates.last()?);
     let days = whole_days(last.end - first.start);
+    if days < 7.0 {
+        // Less than a week has no weekly average.
+        return None;
+    }
     let hours = work_h(subject, first.start, last.end);
     let (value, missing) = match days_of(rule.reference.as_ref()) {
         None => {
@@ -92,7 +97,7 @@ fn average(
             );
             (mean(hours, days), Some(text))
         }
-        Some(needed) => (mean(highest_h(subject, needed), needed), None),
+        Some(needed) => (mean(highest_h(subject, dates, needed), needed), None),
     };
     let unread = subject
         .has_gap(first.start, last.end)
@@ -115,27 +120,28 @@ fn work_h(subject: &Subject<'_>, from: Minute, to: Minute) -> f64 {
         .iter()
         .filter(|duty| (from..to).contains(&duty.start))
         .map(Duty::work_h)
-        .sum()
+        // An empty sum of floats is -0.
+        .sum::<f64>()
+        + 0.0
+}
+
+/// Dates of the roster, for somebody who joins later than in its first week from the first duty on.
+fn dates_of_worker<'a>(subject: &Subject<'a>) -> Option<&'a [CivilDay]> {
+    let dates = subject.axis.rostered_dates();
+    let first_duty = subject.worker.duties.first()?.start;
+    let joined = dates.partition_point(|day| day.end <= first_duty);
+    Some(if joined < 7 { dates } else { &dates[joined..] })
 }
 
 /// The most working hours in any stretch of `days` that begins a whole number of weeks after the first date.
-fn highest_h(subject: &Subject<'_>, days: f64) -> f64 {
-    let dates = subject.axis.rostered_dates();
+fn highest_h(subject: &Subject<'_>, dates: &[CivilDay], days: f64) -> f64 {
     dates
         .iter()
         .step_by(7)
-        .map(|day| (day.start, day.start + whole_minutes(days)))
+        .map(|day| (day.start, day.start + Minute::nearest(days * 1440.0).0))
         .filter(|(_, to)| dates.last().is_some_and(|last| *to <= last.end + 60))
         .map(|(from, to)| work_h(subject, from, to))
         .fold(0.0, f64::max)
-}
-
-#[expect(
-    clippy::cast_possible_truncation,
-    reason = "a reference period has far fewer than 2^53 minutes"
-)]
-fn whole_minutes(days: f64) -> i64 {
-    (days * 1440.0).round() as i64
 }
 
 fn days_of(reference: Option<&ReferencePeriod>) -> Option<f64> {
@@ -143,7 +149,8 @@ fn days_of(reference: Option<&ReferencePeriod>) -> Option<f64> {
     let length = f64::from(reference.len);
     match reference.unit.as_str() {
         "week" => Some(length * 7.0),
-        "month" => Some(length * DAYS_PER_MONTH),
+        // Whole weeks, so that no period holds more Mondays than Sundays: 4 months are 17 weeks. This program's reading.
+        "month" => Some((length * WEEKS_PER_MONTH).floor() * 7.0),
         "d" => Some(length),
         _ => None,
     }

@@ -28,7 +28,7 @@ fn measure(subject: &Subject<'_>, rule: &Rule) -> Vec<Measure> {
         .duties
         .iter()
         .enumerate()
-        .filter(|(_, duty)| duty.duty_h() > above)
+        .filter(|(_, duty)| duty.work_h() > above)
         .map(|(index, duty)| {
             let mut measure = subject.on_duty(index, Minute(duty.break_min.unwrap_or(0)).as_f64());
             if duty.break_min.is_none() {

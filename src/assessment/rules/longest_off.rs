@@ -12,7 +12,7 @@
 //! Windows at every position: the least favourable one lies inside a rest and would accuse an ordinary day worker.
 
 use super::{Measure, Rule, RuleKind, Subject};
-use crate::units::{MINUTES_PER_DAY, Minute};
+use crate::units::Minute;
 
 /// The kind.
 pub(super) const KIND: RuleKind = RuleKind {
@@ -23,36 +23,58 @@ pub(super) const KIND: RuleKind = RuleKind {
 
 fn measure(subject: &Subject<'_>, rule: &Rule) -> Vec<Measure> {
     match rule.window.as_ref().map(|w| (w.align.as_str(), w.len)) {
-        Some(("from-duty-start", hours)) => from_duty_start(subject, i64::from(hours) * 60),
+        Some(("from-duty-start", hours)) => from_duty_start(subject, rule, i64::from(hours) * 60),
         Some(("period", days)) => periods(subject, i64::from(days))
             .into_iter()
-            .map(|(from, to)| in_period(subject, from, to))
+            .map(|period| {
+                let value = longest_off_h(subject, period.from, period.to);
+                on_period(subject, rule, period, value)
+            })
             .collect(),
         _ => Vec::new(),
     }
 }
 
-fn from_duty_start(subject: &Subject<'_>, length: i64) -> Vec<Measure> {
+fn from_duty_start(subject: &Subject<'_>, rule: &Rule, length: i64) -> Vec<Measure> {
     let duties = &subject.worker.duties;
-    (0..duties.len().saturating_sub(1))
-        .filter(|index| !subject.has_gap(duties[*index].start, duties[*index].start + length))
-        .map(|index| {
-            let (from, to) = (duties[index].end, duties[index].start + length);
-            subject.on_window(index, longest_off_h(subject, from.min(to), to))
-        })
-        .collect()
+    let known = |index: usize| !subject.has_gap(duties[index].start, duties[index].start + length);
+    let rest_h = |index: usize| {
+        let (from, to) = (duties[index].end, duties[index].start + length);
+        longest_off_h(subject, from.min(to), to)
+    };
+    let Some(last) = duties.len().checked_sub(1) else {
+        return Vec::new();
+    };
+    let mut measures: Vec<Measure> = (0..last)
+        .filter(|index| known(*index))
+        .map(|index| subject.on_window(index, rest_h(index)))
+        .collect();
+    // After the last duty no window is known; but a duty too long to leave room for the rest is judged at once.
+    if known(last) && !rule.op.holds(rest_h(last), rule.value) {
+        measures.push(subject.on_duty(last, rest_h(last)));
+    }
+    measures
 }
 
-fn in_period(subject: &Subject<'_>, from: Minute, to: Minute) -> Measure {
+/// The measure of a period. One that the roster does not hold completely is judged only when it is in order already.
+pub(super) fn on_period(subject: &Subject<'_>, rule: &Rule, period: Period, value: f64) -> Measure {
+    let in_order = rule.op.holds(value, rule.value);
+    let missing = if in_order {
+        None
+    } else if subject.has_gap(period.from, period.to) {
+        Some("a date of the period could not be read".to_owned())
+    } else if !period.complete {
+        Some("the roster does not hold the period completely".to_owned())
+    } else {
+        None
+    };
     Measure {
-        value: longest_off_h(subject, from, to),
+        value,
         window: None,
-        start: from,
-        end: to,
-        shifts: shifts_in(subject, from, to),
-        missing: subject
-            .has_gap(from, to)
-            .then(|| "a date of the period could not be read".to_owned()),
+        start: period.from,
+        end: period.to,
+        shifts: shifts_in(subject, period.from, period.to),
+        missing,
     }
 }
 
@@ -70,17 +92,29 @@ fn longest_off_h(subject: &Subject<'_>, from: Minute, to: Minute) -> f64 {
     crate::units::minutes_to_hours(longest.max(to - free_since).max(0))
 }
 
-/// Whole periods of the given number of local dates from the first date of the roster; the last, incomplete one is left out.
-pub(super) fn periods(subject: &Subject<'_>, days: i64) -> Vec<(Minute, Minute)> {
-    let Ok(length) = usize::try_from(days) else {
-        return Vec::new();
-    };
+/// One of successive periods.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub(super) struct Period {
+    /// First minute.
+    pub(super) from: Minute,
+    /// First minute after it.
+    pub(super) to: Minute,
+    /// Does the roster hold all its dates?
+    pub(super) complete: bool,
+}
+
+/// Successive periods of the given number of local dates from the first date of the roster; the last may be incomplete.
+pub(super) fn periods(subject: &Subject<'_>, days: i64) -> Vec<Period> {
+    let length = usize::try_from(days).unwrap_or(1).max(1);
     subject
         .axis
         .rostered_dates()
-        .chunks_exact(length.max(1))
-        .map(|chunk| (chunk[0].start, chunk[chunk.len() - 1].end))
-        .filter(|(from, to)| *to - *from > MINUTES_PER_DAY / 2)
+        .chunks(length)
+        .map(|dates| Period {
+            from: dates[0].start,
+            to: dates[dates.len() - 1].end,
+            complete: dates.len() == length,
+        })
         .collect()
 }
 

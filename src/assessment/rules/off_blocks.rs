@@ -11,7 +11,7 @@
 //! # Not covered
 //! Periods that the roster does not hold completely.
 
-use super::longest_off::{periods, shifts_in};
+use super::longest_off::{on_period, periods};
 use super::{Measure, Rule, RuleKind, Subject};
 use crate::units::{MINUTES_PER_DAY, Minute};
 
@@ -26,15 +26,9 @@ fn measure(subject: &Subject<'_>, rule: &Rule) -> Vec<Measure> {
     let days = rule.window.as_ref().map_or(14, |w| i64::from(w.len));
     periods(subject, days)
         .into_iter()
-        .map(|(from, to)| Measure {
-            value: Minute(blocks(subject, from, to)).as_f64(),
-            window: None,
-            start: from,
-            end: to,
-            shifts: shifts_in(subject, from, to),
-            missing: subject
-                .has_gap(from, to)
-                .then(|| "a date of the period could not be read".to_owned()),
+        .map(|period| {
+            let value = Minute(blocks(subject, period.from, period.to)).as_f64();
+            on_period(subject, rule, period, value)
         })
         .collect()
 }

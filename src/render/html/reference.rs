@@ -75,13 +75,25 @@ fn pack_part(pack: &PackRow) -> Markup {
     html! {
         h4 { (pack.name) ": " (pack.title) }
         p { (pack.reading) ". As seen: " (pack.as_seen) ". " (pack.night) "." }
+        @if !pack.left_out.is_empty() {
+            p { "Not measured by this version, so not judged: " (pack.left_out.join(", ")) "." }
+        }
         details {
             summary { "Rules of " (pack.name) }
             div class="scroll" tabindex="0" { table {
                 caption { "Rules of " (pack.name) }
-                thead { tr { th scope="col" { "Rule" } th scope="col" { "In order when" } th scope="col" { "Source" } } }
-                tbody { @for (id, limit, source) in &pack.rules {
-                    tr { th scope="row" { (id) } td { (limit) } td { (source) } }
+                thead { tr {
+                    th scope="col" { "Rule" } th scope="col" { "What it asks" } th scope="col" { "Whom it concerns" }
+                    th scope="col" { "Derogations it knows" } th scope="col" { "Source" }
+                } }
+                tbody { @for rule in &pack.rules {
+                    tr {
+                        th scope="row" { (rule.id) }
+                        td { (rule.asks) }
+                        td { (rule.scope) }
+                        td { @if rule.derogations.is_empty() { "none" } @else { (rule.derogations) } }
+                        td { (rule.source) }
+                    }
                 } }
             } }
         }

@@ -126,8 +126,8 @@ fn summary(report: &ScreenReport) -> Markup {
             }
             p class="lead" {
                 (counted(summary.shifts, "shift")) ", " (format!("{:.1}", summary.duty_h)) " h. Left out of the counts: "
-                (counted(summary.listed, "window")) " over 7 days and " (counted(summary.assumed, "window"))
-                " whose class rests on a model with an assumed history."
+                (counted(summary.listed, "window")) " over 7 days. In " (counted(summary.assumed, "window"))
+                " the model was set aside, because it rests on an assumed history."
             }
             @if summary.incomplete_workers > 0 {
                 p { strong {

@@ -2,12 +2,22 @@
 //!
 //! Column names are those of `result.json`; a modelled number is three columns: median, `_p05`, `_p95`.
 
-use crate::report::document::{BandValue, CasedBand, ScreenReport};
+use crate::report::document::{BandValue, CasedBand, DayRow, ScreenReport};
 use polars::prelude::{Column, DataFrame, NamedFrom, ParquetWriter, PolarsError, Series};
 use std::io::Write;
 
+/// Makes one table of a report.
+pub type TableOf = fn(&ScreenReport) -> Result<DataFrame, PolarsError>;
+
+/// A modelled number of a date.
+type DayBand = fn(&DayRow) -> BandValue;
+/// A modelled number of a date that may have two daylight cases.
+type DayCasedBand = fn(&DayRow) -> CasedBand;
+/// Markers of a date.
+type DayMarkers = fn(&DayRow) -> &[(BandValue, Option<&'static str>)];
+
 /// The tables, each with its file name.
-pub const TABLES: [(&str, fn(&ScreenReport) -> Result<DataFrame, PolarsError>); 4] = [
+pub const TABLES: [(&str, TableOf); 4] = [
     ("lines.parquet", lines),
     ("shifts.parquet", shifts),
     ("windows.parquet", windows),
@@ -24,11 +34,7 @@ pub struct TableError(#[from] PolarsError);
 /// # Errors
 ///
 /// [`TableError`] with the reason that polars gives, which may be the writer's.
-pub fn write(
-    table: fn(&ScreenReport) -> Result<DataFrame, PolarsError>,
-    report: &ScreenReport,
-    out: impl Write,
-) -> Result<(), TableError> {
+pub fn write(table: TableOf, report: &ScreenReport, out: impl Write) -> Result<(), TableError> {
     let mut frame = table(report)?;
     ParquetWriter::new(out)
         .with_row_group_size(Some(100_000))
@@ -84,15 +90,17 @@ fn lines(report: &ScreenReport) -> Result<DataFrame, PolarsError> {
         .iter()
         .flat_map(|line| line.days.iter().map(move |day| (line, day)))
         .collect();
-    let text = |value: fn(&(&crate::report::LineSection, &crate::report::DayRow)) -> String| {
+    let text = |value: fn(&(&crate::report::LineSection, &DayRow)) -> String| {
         rows.iter().map(value).collect::<Vec<String>>()
     };
-    let of = |value: fn(&crate::report::DayRow) -> BandValue| {
-        rows.iter().map(|(_, day)| value(day)).collect::<Vec<_>>()
-    };
-    let marker = |first: fn(&crate::report::DayRow) -> &[(BandValue, Option<&'static str>)]| {
+    let of = |value: DayBand| rows.iter().map(|(_, day)| value(day)).collect::<Vec<_>>();
+    // One median where the date has one marker in one case; otherwise the JSON holds them all.
+    let marker = |markers: DayMarkers| {
         rows.iter()
-            .map(|(_, day)| first(day).first().map(|(value, _)| value.median))
+            .map(|(_, day)| match markers(day) {
+                [(value, None)] => Some(value.median),
+                _ => None,
+            })
             .collect::<Vec<Option<f64>>>()
     };
     let mut columns = vec![
@@ -107,7 +115,7 @@ fn lines(report: &ScreenReport) -> Result<DataFrame, PolarsError> {
         column("cbtmin", marker(|day| &day.cbtmin)),
         column("dlmo", marker(|day| &day.dlmo)),
     ];
-    let values: [(&str, fn(&crate::report::DayRow) -> BandValue); 6] = [
+    let values: [(&str, DayBand); 6] = [
         ("sleep_h", |d| d.sleep_h),
         ("mesor", |d| d.mesor),
         ("amplitude", |d| d.amplitude),
@@ -118,7 +126,7 @@ fn lines(report: &ScreenReport) -> Result<DataFrame, PolarsError> {
     for (name, value) in values {
         columns.extend(banded(name, &of(value)));
     }
-    let times: [(&str, fn(&crate::report::DayRow) -> CasedBand); 5] = [
+    let times: [(&str, DayCasedBand); 5] = [
         ("acrophase_h", |d| d.acrophase_h),
         ("peak_time", |d| d.peak_time),
         ("nadir_time", |d| d.nadir_time),

@@ -57,11 +57,10 @@ pub fn write(report: &ScreenReport, out: &mut dyn Write) -> io::Result<()> {
     )?;
     writeln!(
         out,
-        "Not counted      {:>5}   not judged {:>4}   over 7 days {:>2}   history assumed {:>2}",
-        summary.not_judged + summary.listed + summary.assumed,
+        "Not counted      {:>5}   not judged {:>4}   over 7 days {:>2}",
+        summary.not_judged + summary.listed,
         summary.not_judged,
-        summary.listed,
-        summary.assumed
+        summary.listed
     )?;
     writeln!(
         out,
@@ -73,6 +72,15 @@ pub fn write(report: &ScreenReport, out: &mut dyn Write) -> io::Result<()> {
     )?;
     writeln!(out)?;
     paragraph(out, &summary.statement)?;
+    if summary.assumed > 0 {
+        paragraph(
+            out,
+            &format!(
+                "In {} the model was set aside, because it rests on an assumed history.",
+                counted(summary.assumed, "window")
+            ),
+        )?;
+    }
     paragraph(out, &format!("Input: {}.", report.diagnostic_counts))?;
     findings(report, out)?;
     writeln!(out)?;

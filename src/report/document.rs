@@ -130,7 +130,7 @@ pub struct Summary {
     pub not_judged: usize,
     /// Windows over 7 days.
     pub listed: usize,
-    /// Windows left out of shares because their class rests on a model with an assumed history.
+    /// Windows in which the model was set aside because it rests on an assumed history.
     pub assumed: usize,
     /// Findings at `priority`.
     pub priority: usize,

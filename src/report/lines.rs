@@ -253,7 +253,7 @@ fn evidence(input: &ReportInput<'_>, windows: &[LineWindowRow], subject: &str) -
     if awake > 0 {
         lines.push(format!(
             "Before {} the {subject} is awake in the reference quiescent interval for more than {tolerance} h beyond the habitual hours.",
-            wording::counted(awake, "duty").replace("dutys", "duties")
+            wording::counted(awake, "duty")
         ));
     }
     lines.push(

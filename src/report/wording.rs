@@ -30,12 +30,12 @@ pub fn when(axis: &Axis, minute: Minute) -> String {
     axis.local(minute).format("%a %d %b %H:%M").to_string()
 }
 
-/// A count with its noun: `1 worker`, `3 workers`.
+/// A count with its noun: `1 worker`, `3 workers`, `2 duties`.
 pub fn counted(count: usize, noun: &str) -> String {
-    if count == 1 {
-        format!("1 {noun}")
-    } else {
-        format!("{count} {noun}s")
+    match (count, noun.strip_suffix('y')) {
+        (1, _) => format!("1 {noun}"),
+        (_, Some(stem)) => format!("{count} {stem}ies"),
+        (_, None) => format!("{count} {noun}s"),
     }
 }
 

@@ -104,9 +104,10 @@ pub fn screen(
     // Civil time becomes elapsed time.
     let scene = SiteScene {
         work_light: work_light(screening.site.task_light, &sets),
+        place: screening.site.place,
         habits: habit_file.habits(),
     };
-    let axis = Axis::of(roster, &scene.habits)?;
+    let axis = Axis::of(roster, &scene)?;
     let lines = roster::lines(roster, scene.habits.join_gap_min);
     let timelines: Vec<Timeline> = lines
         .iter()
@@ -157,6 +158,7 @@ pub fn screen(
             members: members.len(),
             seed: screening.seed,
             morning_daylight: screening.site.morning_daylight,
+            place: screening.site.place,
         },
     }))
 }

@@ -7,3 +7,4 @@ pub mod low_discrepancy;
 pub mod periodic_table;
 pub mod quantile;
 pub mod rounding;
+pub mod sun;

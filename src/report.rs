@@ -22,9 +22,11 @@ pub use document::{
 
 use crate::assessment::{Assessment, Attention, Criteria, Pack, WindowClass};
 use crate::diagnostic::Diagnostic;
+use crate::numeric::sun::Place;
 use crate::physiology::{ModelSets, Simulation};
 use crate::roster::Roster;
 use crate::timeline::{Axis, HabitFile};
+use crate::units::ClockHour;
 use document::{InputRow, MethodRow};
 
 /// What a report is made from.
@@ -57,7 +59,7 @@ pub struct ReportInput<'a> {
 }
 
 /// Facts of the run that no other stage knows.
-#[derive(Debug, Clone, PartialEq, Eq)]
+#[derive(Debug, Clone, PartialEq)]
 pub struct RunFacts {
     /// Version of the program.
     pub version: String,
@@ -69,6 +71,8 @@ pub struct RunFacts {
     pub seed: u64,
     /// What the site says of morning daylight on the way home.
     pub morning_daylight: Option<bool>,
+    /// Where the workplace is, for daylight.
+    pub place: Option<Place>,
 }
 
 /// Builds the document.
@@ -170,6 +174,17 @@ fn provenance(input: &ReportInput<'_>) -> Provenance {
         pacemaker: input.sets.pacemaker.name.clone(),
         members: input.run.members,
         seed: input.run.seed,
+        daylight: match input.run.place {
+            Some(place) => format!(
+                "sunrise to sunset at latitude {}, longitude {}",
+                place.latitude_deg, place.longitude_deg
+            ),
+            None => format!(
+                "{} to {} on the clock, no place given",
+                ClockHour::wrapping(input.habits.daylight.sunrise.value),
+                ClockHour::wrapping(input.habits.daylight.sunset.value)
+            ),
+        },
         morning_daylight: match input.run.morning_daylight {
             Some(true) => "seen on the way home after nights".to_owned(),
             Some(false) => "kept out on the way home after nights".to_owned(),

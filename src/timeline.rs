@@ -7,9 +7,10 @@ pub mod civil;
 pub mod habits;
 pub mod plan;
 
-pub use civil::{CivilClock, CivilDay};
+pub use civil::{CivilClock, CivilDay, DaylightSource};
 pub use habits::{HabitFile, Habits};
 
+use crate::numeric::sun::Place;
 use crate::roster::{DutyBlock, Roster, WorkerId};
 use crate::units::{ClockHour, Lux, Minute, minutes_to_hours};
 use chrono::{DateTime, Days, NaiveDate, Utc};
@@ -62,8 +63,23 @@ impl Timeline {
 pub struct SiteScene {
     /// Light at the eye on duty, where the site file gives it.
     pub work_light: Option<Lux>,
+    /// Where the workplace is, for daylight.
+    pub place: Option<Place>,
     /// Time around duty.
     pub habits: Habits,
+}
+
+impl SiteScene {
+    /// Where daylight comes from.
+    fn daylight(&self) -> DaylightSource {
+        match self.place {
+            Some(place) => DaylightSource::Sun(place),
+            None => DaylightSource::ClockHours {
+                sunrise_h: self.habits.sunrise_h,
+                sunset_h: self.habits.sunset_h,
+            },
+        }
+    }
 }
 
 /// The elapsed-time axis that all workers of a roster share.
@@ -85,7 +101,7 @@ impl Axis {
     /// The axis of a roster: from the date of its first shift to the date on which its last shift ends.
     ///
     /// Returns `None` for a roster without shifts.
-    pub fn of(roster: &Roster, habits: &Habits) -> Option<Self> {
+    pub fn of(roster: &Roster, scene: &SiteScene) -> Option<Self> {
         let first = roster.shifts.iter().map(|shift| shift.start).min()?;
         let last = roster.shifts.iter().map(|shift| shift.end).max()?;
         let zone = roster.zone;
@@ -96,7 +112,7 @@ impl Axis {
         let epoch = civil::midnight(zone, first_date);
         Some(Self {
             epoch,
-            days: civil::days(zone, epoch, first_date, last_date, habits),
+            days: civil::days(zone, epoch, (first_date, last_date), scene.daylight()),
             clock: CivilClock::of(zone, epoch, last + chrono::Duration::days(3)),
             zone,
             last_start: roster.shifts.iter().map(|shift| shift.start).max()?,
@@ -149,7 +165,20 @@ pub fn timeline(roster: &Roster, worker: WorkerId, axis: &Axis, scene: &SiteScen
         days: axis.days.clone(),
         clock: axis.clock.clone(),
         end,
-        habits: scene.habits,
+        habits: with_daylight_of_first_date(scene.habits, axis),
+    }
+}
+
+/// Habitual days before the roster have the daylight of its first date.
+fn with_daylight_of_first_date(habits: Habits, axis: &Axis) -> Habits {
+    let Some(day) = axis.days.get(1) else {
+        return habits;
+    };
+    let clock_h = |minute: Minute| minutes_to_hours(axis.clock.at(minute));
+    Habits {
+        sunrise_h: clock_h(day.sunrise),
+        sunset_h: clock_h(day.sunset),
+        ..habits
     }
 }
 

@@ -1,6 +1,7 @@
 //! The site file: what the workplace adds to every roster.
 
 use super::zone_name::zone_named;
+use crate::numeric::sun::Place;
 use crate::units::Lux;
 use chrono_tz::Tz;
 use serde::Deserialize;
@@ -15,6 +16,8 @@ pub struct Site {
     pub rules: Vec<String>,
     /// Light on the task, lux; the eye gets a share of it.
     pub task_light: Option<Lux>,
+    /// Where the workplace is, for daylight.
+    pub place: Option<Place>,
     /// Median commute each way, minutes.
     pub commute_min: Option<f64>,
     /// Is morning daylight seen on the way home from nights?
@@ -31,6 +34,8 @@ struct SiteFile {
     #[serde(default)]
     rules: Vec<String>,
     task_light_lux: Option<f64>,
+    latitude: Option<f64>,
+    longitude: Option<f64>,
     commute_min: Option<f64>,
     morning_daylight: Option<bool>,
     #[serde(default)]
@@ -88,8 +93,59 @@ pub fn read(text: &str) -> Result<Site, SiteError> {
         zone,
         rules: file.rules,
         task_light,
+        place: place(file.latitude, file.longitude)?,
         commute_min: file.commute_min,
         morning_daylight: file.morning_daylight,
         derogations: file.derogations,
     })
+}
+
+fn place(latitude: Option<f64>, longitude: Option<f64>) -> Result<Option<Place>, SiteError> {
+    match (latitude, longitude) {
+        (None, None) => Ok(None),
+        (Some(latitude_deg), Some(longitude_deg)) => {
+            let within = |name: &str, value: f64, limit: f64| {
+                if value.is_finite() && value.abs() <= limit {
+                    Ok(())
+                } else {
+                    Err(SiteError::Number(format!(
+                        "{name} must lie in -{limit} to {limit} degrees, found {value}"
+                    )))
+                }
+            };
+            within("latitude", latitude_deg, 90.0)?;
+            within("longitude", longitude_deg, 180.0)?;
+            Ok(Some(Place {
+                latitude_deg,
+                longitude_deg,
+            }))
+        }
+        _ => Err(SiteError::Number(
+            "latitude and longitude go together; give both, in degrees, north and east positive"
+                .to_owned(),
+        )),
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn places_are_whole_and_on_earth() {
+        let place = |text: &str| read(text).map(|site| site.place);
+        assert_eq!(place("").unwrap(), None);
+        assert!(
+            place("latitude = 51.5\nlongitude = -0.1")
+                .unwrap()
+                .is_some()
+        );
+        for wrong in [
+            "latitude = 91\nlongitude = 0",
+            "latitude = 1",
+            "latitude = nan\nlongitude = 0",
+        ] {
+            assert!(place(wrong).is_err(), "{wrong}");
+        }
+    }
 }

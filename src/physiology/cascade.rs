@@ -137,6 +137,31 @@ impl Cascade {
     ///
     /// `state` is the state at `from` and afterwards the state at `to`.
     ///
+    /// # Units
+    ///
+    /// nmol/L of total serum cortisol; one value per minute, the first at `from`.
+    ///
+    /// # Range
+    ///
+    /// The start is forgotten after three days. Tracks must hold the sleeps and `CBTmin`s of the stretch.
+    ///
+    /// # Example
+    ///
+    /// ```
+    /// use acroshift::physiology::cascade::{Cascade, SleepDebt};
+    /// use acroshift::physiology::{Member, MemberTrack, ModelSets};
+    /// use acroshift::units::Minute;
+    /// let sets = ModelSets::embedded();
+    /// let cascade = Cascade::new(&sets.cascade);
+    /// // Five habitual nights 23-07 with CBTmin at 04:00, up to noon of the day before minute 0.
+    /// let track = MemberTrack::habitual(Member::mean(&sets.ensemble, 30.0), -1200.0, 5);
+    /// let mut state = cascade.start();
+    /// let rows = cascade.run(&[track], SleepDebt::Off, (Minute(-6480), Minute(-720)), &mut state);
+    /// // At 08:00 of the last morning the curve is near its peak of 428 nmol/L.
+    /// let eight = rows[usize::try_from(-960 + 6480).unwrap()][0];
+    /// assert!((eight - 427.4).abs() < 1.0);
+    /// ```
+    ///
     /// # Panics
     ///
     /// Panics when more than [`LANES`] tracks are given; the caller cuts the ensemble into units.

@@ -151,7 +151,24 @@ impl LightDrive {
     }
 }
 
-/// Lives the roster with one unit of members.
+/// Lives the roster with one unit of members, from [`ENTRY`] to the end of the timeline.
+///
+/// # Example
+///
+/// ```
+/// use acroshift::physiology::coupled::{live, warm_up};
+/// use acroshift::physiology::{coupled_models, Member, ModelSets};
+/// use acroshift::timeline::{CivilClock, HabitFile, Timeline};
+/// use acroshift::units::Minute;
+/// let sets = ModelSets::embedded();
+/// let models = coupled_models(&sets);
+/// let habits = HabitFile::embedded().habits();
+/// let warm = warm_up(&models, &[Member::mean(&sets.ensemble, 30.0)], &habits);
+/// let free = Timeline { duties: Vec::new(), days: Vec::new(), clock: CivilClock::steady(), end: Minute(1440), habits };
+/// let track = &live(&models, &warm, &free)[0];
+/// // The last CBTmin before the entry stands at 03:32 (reference case of the sleep mechanism).
+/// assert!((track.habitual_cbtmin_min / 60.0 + 24.0 - 3.5326).abs() < 0.01);
+/// ```
 pub fn live(models: &CoupledModels, warm: &WarmUnit, timeline: &Timeline) -> Vec<MemberTrack> {
     let lane_members = lanes_of(&warm.members);
     let stiffness = lane_members.map(|m| models.pacemaker.stiffness(m.tau_h));

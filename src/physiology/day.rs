@@ -62,7 +62,26 @@ impl Stretch {
     }
 }
 
-/// Features of a stretch.
+/// Features of a stretch: mean, 24-h cosine, peak, nadir and the quiescent interval around it.
+///
+/// # Units
+///
+/// nmol/L and minutes; `share_of_mean` without unit.
+///
+/// # Example
+///
+/// ```
+/// use acroshift::physiology::day::{cortisol_day, CortisolSeries, Stretch};
+/// use acroshift::units::Minute;
+/// let values: Vec<f64> = (0..2880)
+///     .map(|minute| 200.0 - 150.0 * (f64::from(minute) * std::f64::consts::TAU / 1440.0).cos())
+///     .collect();
+/// let series = CortisolSeries { from: Minute(0), values: &values };
+/// let day = cortisol_day(series, Stretch::whole(Minute(720), Minute(2160)), 0.6).expect("the stretch lies inside");
+/// assert_eq!((day.nadir_at, day.peak_at), (Minute(1440), Minute(720)));
+/// assert!((day.mean - 200.0).abs() < 1e-9);
+/// ```
+///
 ///
 /// The quiescent interval may reach beyond the stretch on either side.
 /// Returns `None` when the stretch does not lie inside the series.

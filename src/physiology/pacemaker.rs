@@ -109,6 +109,20 @@ impl Pacemaker {
     /// # Source
     ///
     /// St. Hilaire et al. 2007, J Theor Biol 247:583. In one public code the two constants are swapped; this is the form of the other.
+    ///
+    /// # Range
+    ///
+    /// Darkness and anything below give 0.
+    ///
+    /// # Example
+    ///
+    /// ```
+    /// use acroshift::physiology::{ModelSets, pacemaker::Pacemaker};
+    /// let pacemaker = Pacemaker::new(&ModelSets::embedded().pacemaker);
+    /// // 0.1 (9500/9500)^0.5 9500/9600
+    /// assert!((pacemaker.alpha(9500.0) - 0.1 * 9500.0 / 9600.0).abs() < 1e-12);
+    /// assert_eq!(pacemaker.alpha(0.0), 0.0);
+    /// ```
     pub fn alpha(&self, light_lux: f64) -> f64 {
         if light_lux <= 0.0 {
             return 0.0;
@@ -143,6 +157,30 @@ impl Pacemaker {
     /// # Source
     ///
     /// St. Hilaire et al. 2007; process P of Jewett, Forger and Kronauer 1999, J Biol Rhythms 14:493. Deviations: none.
+    ///
+    /// # Units
+    ///
+    /// `state` and `input` hold one value per member; `stiffness` is that of [`Pacemaker::stiffness`]. The state is moved by one minute.
+    ///
+    /// # Range
+    ///
+    /// Up to 10 000 lux the phase error of one-minute steps is below 0.001 min against an adaptive solver; at 100 000 lux 0.001 min.
+    ///
+    /// # Example
+    ///
+    /// ```
+    /// use acroshift::physiology::pacemaker::{LANES, Pacemaker, PacemakerInput};
+    /// use acroshift::physiology::ModelSets;
+    /// let pacemaker = Pacemaker::new(&ModelSets::embedded().pacemaker);
+    /// let mut state = pacemaker.start();
+    /// let dark = PacemakerInput { alpha: [0.0; LANES], arousal: [pacemaker.arousal(true); LANES] };
+    /// let stiffness = [pacemaker.stiffness(24.2); LANES];
+    /// for _ in 0..60 {
+    ///     pacemaker.step(&mut state, &dark, &stiffness);
+    /// }
+    /// // Photoreceptors recover in the dark: n = 0.3 exp(-60 * 0.007).
+    /// assert!((state.n[0] - 0.3 * (-0.42_f64).exp()).abs() < 1e-6);
+    /// ```
     pub fn step(
         &self,
         state: &mut PacemakerState,

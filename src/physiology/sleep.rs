@@ -68,6 +68,23 @@ impl SleepModel {
     /// ```text
     /// a = exp(-(24 - N)/tau_r),  e = exp(-N/tau_d);  S_bed = (1 - a)/(1 - a e);  S_wake = S_bed e
     /// ```
+    ///
+    /// # Units
+    ///
+    /// `need_h` hours of sleep a day, above 0 and below 24; results without unit, in (0, 1).
+    ///
+    /// # Source
+    ///
+    /// Daan, Beersma and Borbely 1984, Am J Physiol 246:R161 (asymptotes 1 and 0); steady state computed by this project.
+    ///
+    /// # Example
+    ///
+    /// ```
+    /// use acroshift::physiology::{ModelSets, sleep::SleepModel};
+    /// let model = SleepModel::new(&ModelSets::embedded().sleep);
+    /// let (bed, wake) = model.habitual_pressure(8.0);
+    /// assert!((bed - 0.6234).abs() < 1e-4 && (wake - 0.0928).abs() < 1e-4);
+    /// ```
     pub fn habitual_pressure(&self, need_h: f64) -> (f64, f64) {
         let a = libm::exp(-(24.0 - need_h) * 60.0 / self.tau_rise_min);
         let e = libm::exp(-need_h * 60.0 / self.tau_fall_min);

@@ -52,6 +52,7 @@ struct Run<'a> {
     pacemaker: &'a str,
     members: usize,
     seed: u64,
+    daylight: &'a str,
     morning_daylight: &'a str,
 }
 
@@ -296,6 +297,7 @@ fn run(report: &ScreenReport) -> Run<'_> {
         pacemaker: &provenance.pacemaker,
         members: provenance.members,
         seed: provenance.seed,
+        daylight: &provenance.daylight,
         morning_daylight: &provenance.morning_daylight,
     }
 }

@@ -167,6 +167,8 @@ pub struct Provenance {
     pub members: usize,
     /// Seed.
     pub seed: u64,
+    /// Hours of daylight.
+    pub daylight: String,
     /// Morning daylight.
     pub morning_daylight: String,
 }

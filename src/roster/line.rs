@@ -27,6 +27,18 @@ pub struct DutyLine {
 type DutyKey = (DateTime<Utc>, DateTime<Utc>, Option<u16>);
 
 /// Groups workers by their counted duties. The order of rows in the file does not matter.
+///
+/// # Example
+///
+/// ```
+/// use acroshift::intake::{read, Input, Reading};
+/// let csv = b"worker,start,end\nA,2026-03-09T08:00,2026-03-09T16:00\nB,2026-03-09T08:00,2026-03-09T16:00\nC,2026-03-09T22:00,2026-03-10T06:00\n";
+/// let reading = Reading { zone: Some(chrono_tz::UTC), ..Reading::default() };
+/// let roster = read(&[Input { name: "ward.csv", bytes: csv }], &reading).roster.expect("the file is in order");
+/// let lines = acroshift::roster::lines(&roster, 15);
+/// assert_eq!(lines.len(), 2);
+/// assert_eq!(lines[0].workers.len(), 2);
+/// ```
 pub fn lines(roster: &Roster, join_gap_min: i64) -> Vec<DutyLine> {
     let mut groups: BTreeMap<Vec<DutyKey>, Vec<WorkerId>> = BTreeMap::new();
     for worker in roster.worker_ids() {

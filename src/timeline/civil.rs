@@ -1,8 +1,10 @@
 //! Local dates and the local clock on the elapsed time axis.
 
-use super::Habits;
+use crate::numeric::sun::{Daylight, Place, daylight};
 use crate::units::Minute;
-use chrono::{DateTime, Duration, NaiveDate, NaiveDateTime, NaiveTime, Offset, TimeZone, Utc};
+use chrono::{
+    DateTime, Datelike, Duration, NaiveDate, NaiveDateTime, NaiveTime, Offset, TimeZone, Utc,
+};
 use chrono_tz::Tz;
 
 /// One local date on the elapsed time axis.
@@ -95,13 +97,26 @@ fn offset_before_gap(zone: Tz, local: NaiveDateTime) -> Duration {
     Duration::zero()
 }
 
+/// Where daylight comes from: the sun over the workplace, or clock hours where no place is known.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub enum DaylightSource {
+    /// The sun over a place.
+    Sun(Place),
+    /// The same clock hours all year round.
+    ClockHours {
+        /// Sunrise.
+        sunrise_h: f64,
+        /// Sunset.
+        sunset_h: f64,
+    },
+}
+
 /// Local dates from the day before `first` to `last`, on the axis that begins at `epoch`.
 pub fn days(
     zone: Tz,
     epoch: DateTime<Utc>,
-    first: NaiveDate,
-    last: NaiveDate,
-    habits: &Habits,
+    (first, last): (NaiveDate, NaiveDate),
+    source: DaylightSource,
 ) -> Vec<CivilDay> {
     let minute = |instant: DateTime<Utc>| Minute((instant - epoch).num_minutes());
     let before = first.pred_opt().unwrap_or(first);
@@ -110,13 +125,32 @@ pub fn days(
         .take_while(|date| *date <= last)
         .map(|date| {
             let next = date.succ_opt().unwrap_or(date);
+            let (start, end) = (minute(midnight(zone, date)), minute(midnight(zone, next)));
             let at = |hour: f64| minute(instant_of(zone, date.and_time(time_of(hour))));
+            let (sunrise, sunset) = match source {
+                DaylightSource::ClockHours {
+                    sunrise_h,
+                    sunset_h,
+                } => (at(sunrise_h), at(sunset_h)),
+                DaylightSource::Sun(place) => match daylight(date.num_days_from_ce(), place) {
+                    Daylight::Between {
+                        sunrise_min,
+                        sunset_min,
+                    } => {
+                        let midnight = minute(midnight(Tz::UTC, date));
+                        let after = |m: f64| Minute::nearest(midnight.as_f64() + m);
+                        (after(sunrise_min), after(sunset_min))
+                    }
+                    Daylight::AllDay => (start, end),
+                    Daylight::None => (start, start),
+                },
+            };
             CivilDay {
                 date,
-                start: minute(midnight(zone, date)),
-                end: minute(midnight(zone, next)),
-                sunrise: at(habits.sunrise_h),
-                sunset: at(habits.sunset_h),
+                start,
+                end,
+                sunrise,
+                sunset,
             }
         })
         .filter(|day| day.start < day.end)
@@ -136,7 +170,38 @@ pub(super) fn time_of(hour: f64) -> NaiveTime {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::timeline::HabitFile;
+
+    const CLOCK: DaylightSource = DaylightSource::ClockHours {
+        sunrise_h: 7.0,
+        sunset_h: 19.0,
+    };
+
+    #[test]
+    fn the_sun_over_the_place_gives_daylight_and_its_absence() {
+        let of = |zone: Tz, day: &str, latitude_deg: f64, longitude_deg: f64| {
+            let first = date(day);
+            let source = DaylightSource::Sun(Place {
+                latitude_deg,
+                longitude_deg,
+            });
+            days(zone, midnight(zone, first), (first, first), source)[1]
+        };
+        // London 2024-06-21: 03:43 and 20:22 UTC, 04:43 and 21:22 on the clock.
+        let london = of(chrono_tz::Europe::London, "2024-06-21", 51.5074, -0.1278);
+        assert_eq!((london.sunrise, london.sunset), (Minute(283), Minute(1282)));
+        // Sydney 2024-12-21: sunrise 18:40:53 UTC on the day before, 05:41 on the clock.
+        let sydney = of(
+            chrono_tz::Australia::Sydney,
+            "2024-12-21",
+            -33.8688,
+            151.2093,
+        );
+        assert_eq!(sydney.sunrise, Minute(341));
+        let summer = of(chrono_tz::Europe::Oslo, "2024-06-21", 69.6492, 18.9553);
+        assert_eq!((summer.sunrise, summer.sunset), (summer.start, summer.end));
+        let winter = of(chrono_tz::Europe::Oslo, "2024-12-21", 69.6492, 18.9553);
+        assert_eq!(winter.sunrise, winter.sunset);
+    }
 
     fn date(text: &str) -> NaiveDate {
         text.parse().unwrap()
@@ -147,8 +212,7 @@ mod tests {
         let zone = chrono_tz::Europe::London;
         let first = date("2026-03-28");
         let epoch = midnight(zone, first);
-        let habits = HabitFile::embedded().habits();
-        let days = days(zone, epoch, first, date("2026-03-30"), &habits);
+        let days = days(zone, epoch, (first, date("2026-03-30")), CLOCK);
         let hours: Vec<_> = days.iter().map(|d| (d.end - d.start) / 60).collect();
         assert_eq!(hours, [24, 24, 23, 24]);
         assert_eq!(days[1].start, Minute(0));
@@ -158,14 +222,8 @@ mod tests {
     fn a_date_that_the_zone_skipped_is_no_day() {
         let zone = chrono_tz::Pacific::Apia;
         let first = date("2011-12-29");
-        let habits = HabitFile::embedded().habits();
-        let days = days(
-            zone,
-            midnight(zone, first),
-            first,
-            date("2011-12-31"),
-            &habits,
-        );
+        let range = (first, date("2011-12-31"));
+        let days = days(zone, midnight(zone, first), range, CLOCK);
         let dates: Vec<_> = days.iter().map(|d| d.date.to_string()).collect();
         assert_eq!(dates, ["2011-12-28", "2011-12-29", "2011-12-31"]);
     }

@@ -198,3 +198,29 @@ fn a_shift_that_reads_as_next_day_keeps_its_length() {
     let shift = &read.roster.unwrap().shifts[0];
     assert_eq!((shift.end - shift.start).num_hours(), 8);
 }
+
+/// Where the site gives its place, daylight follows the sun: a summer in the north moves the clock against 07-19.
+#[test]
+fn the_place_of_the_site_sets_the_daylight() {
+    let csv = pattern("NNNNN..", 4, &[('N', "22:00", "06:00")])
+        .replace("2026-01", "2026-06")
+        .replace("2026-02", "2026-06");
+    let rows: Vec<&str> = csv.lines().take(15).collect();
+    let csv = format!("{}\n", rows.join("\n"));
+    let mut north = crate::rosters::screening(&["eu-wtd"]);
+    let plain = crate::rosters::report_with(&csv, "Europe/Oslo", &north);
+    north.site.place = Some(acroshift::numeric::sun::Place {
+        latitude_deg: 59.9,
+        longitude_deg: 10.7,
+    });
+    let sunny = crate::rosters::report_with(&csv, "Europe/Oslo", &north);
+    assert!(sunny.provenance.daylight.contains("latitude 59.9"));
+    assert!(plain.provenance.daylight.contains("07:00 to 19:00"));
+    let last = |report: &ScreenReport| report.lines[0].windows[9].cbtmin_displacement_h.all.median;
+    assert!(
+        (last(&plain) - last(&sunny)).abs() > 0.2,
+        "{} {}",
+        last(&plain),
+        last(&sunny)
+    );
+}

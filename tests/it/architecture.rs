@@ -15,9 +15,16 @@ fn allowed() -> BTreeMap<&'static str, &'static [&'static str]> {
         // Civil time is settled in one place, which intake asks for the instant of a local time.
         (
             "intake",
-            &["roster", "diagnostic", "source", "units", "timeline"][..],
+            &[
+                "roster",
+                "diagnostic",
+                "source",
+                "units",
+                "timeline",
+                "numeric",
+            ][..],
         ),
-        ("timeline", &["roster", "units"][..]),
+        ("timeline", &["roster", "numeric", "units"][..]),
         ("physiology", &["timeline", "numeric", "units"][..]),
         (
             "assessment",

@@ -65,11 +65,12 @@ fn a_third_of_an_hour_of_sleep_changes_few_classes() {
     let read = crate::rosters::read(&demo_csv(), "Europe/London");
     let roster = read.roster.unwrap();
     let habits = HabitFile::embedded().habits();
-    let axis = Axis::of(&roster, &habits).unwrap();
     let scene = SiteScene {
         work_light: None,
+        place: None,
         habits,
     };
+    let axis = Axis::of(&roster, &scene).unwrap();
     let lines = lines(&roster, habits.join_gap_min);
     let timelines: Vec<_> = lines
         .iter()

@@ -3,3 +3,4 @@
 mod cascade;
 mod pacemaker;
 mod sleep;
+mod sun;

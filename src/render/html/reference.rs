@@ -131,6 +131,7 @@ fn provenance(report: &ScreenReport) -> Markup {
         ("pacemaker", run.pacemaker.clone()),
         ("members", run.members.to_string()),
         ("seed", run.seed.to_string()),
+        ("daylight", run.daylight.clone()),
         ("morning daylight", run.morning_daylight.clone()),
     ];
     html! {

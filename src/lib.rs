@@ -35,7 +35,7 @@ pub mod render;
 
 use assessment::{AssessmentInput, Criteria, Pack};
 use intake::site::Site;
-use physiology::{ModelSets, Sampling};
+use physiology::{ModelSets, PacemakerName, Sampling};
 use report::{Audience, ReportInput, RunFacts, ScreenReport};
 use roster::Roster;
 use timeline::{Axis, HabitFile, SiteScene, Timeline};
@@ -54,6 +54,8 @@ pub struct Screening {
     pub members: usize,
     /// Seed of the ensemble.
     pub seed: u64,
+    /// Pacemaker.
+    pub pacemaker: PacemakerName,
 }
 
 /// Names and SHA-256 of the input files, in the order in which they were read.
@@ -66,7 +68,7 @@ pub type InputHashes = [(String, String)];
 /// # Example
 ///
 /// ```
-/// use acroshift::{Screening, assessment::pack, intake, report::Audience, screen};
+/// use acroshift::{Screening, assessment::pack, intake, physiology::PacemakerName, report::Audience, screen};
 ///
 /// let csv = b"worker,start,end\nA1,2026-03-09T14:00,2026-03-09T22:00\nA1,2026-03-10T06:00,2026-03-10T14:00\n";
 /// let reading = intake::Reading { zone: Some(chrono_tz::Europe::London), ..intake::Reading::default() };
@@ -77,6 +79,7 @@ pub type InputHashes = [(String, String)];
 ///     site: intake::site::Site::default(),
 ///     members: 8,
 ///     seed: 1,
+///     pacemaker: PacemakerName::Hilaire2007,
 /// };
 /// let roster = read.roster.expect("the file is in order");
 /// let report = screen(&roster, &read.diagnostics, &[], &screening).expect("there are shifts");
@@ -91,7 +94,7 @@ pub fn screen(
     screening: &Screening,
 ) -> Option<ScreenReport> {
     let habit_file = HabitFile::embedded();
-    let sets = ModelSets::embedded();
+    let sets = ModelSets::with_pacemaker(screening.pacemaker);
     let criteria = Criteria::embedded();
 
     // A commute is the worker's own: the planner's generic adult does not have it.

@@ -20,7 +20,7 @@ pub mod track;
 
 pub use day::CortisolDay;
 pub use ensemble::{Member, Sampling, members};
-pub use parameters::ModelSets;
+pub use parameters::{ModelSets, PacemakerName};
 pub use track::{MemberTrack, SleepEpisode};
 
 use crate::numeric::quantile::{Quantiles, quantiles};
@@ -112,10 +112,10 @@ pub fn simulate(timelines: &[Timeline], members: &[Member], sets: &ModelSets) ->
     };
     let models = coupled_models(sets);
     let cascade = Cascade::new(&sets.cascade);
-    let marker = &sets.pacemaker.marker;
+    let reading = sets.pacemaker.reading();
     let melatonin = MelatoninMarkers {
-        onset_before_cbtmin_min: marker.dlmo_before_cbtmin.value * 60.0,
-        duration_min: marker.melatonin_duration.value * 60.0,
+        onset_before_cbtmin_min: reading.dlmo_before_cbtmin_min,
+        duration_min: reading.melatonin_duration_min,
     };
     let units: Vec<WarmUnit> = members
         .par_chunks(LANES)
@@ -143,7 +143,7 @@ pub fn coupled_models(sets: &ModelSets) -> CoupledModels {
         pacemaker: pacemaker::Pacemaker::new(&sets.pacemaker),
         sleep: sleep::SleepModel::new(&sets.sleep),
         light: light::LightScenes::new(&sets.light),
-        habitual_days: sets.pacemaker.start.habitual_days.value as i64,
+        habitual_days: sets.pacemaker.reading().habitual_days as i64,
     }
 }
 

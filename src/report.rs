@@ -171,7 +171,7 @@ fn provenance(input: &ReportInput<'_>) -> Provenance {
         from: date(dates.first()),
         to: date(dates.last()),
         rules: input.packs.iter().map(|pack| pack.pack.clone()).collect(),
-        pacemaker: input.sets.pacemaker.name.clone(),
+        pacemaker: input.sets.pacemaker.name_and_publication().0.to_owned(),
         members: input.run.members,
         seed: input.run.seed,
         daylight: match input.run.place {

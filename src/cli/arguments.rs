@@ -63,6 +63,10 @@ pub(crate) struct ScreenOptions {
     #[arg(long, value_name = "N", default_value_t = 1)]
     pub(crate) seed: u64,
 
+    /// Model of the body clock.
+    #[arg(long, value_enum, value_name = "NAME", default_value_t = PacemakerOption::Hilaire2007)]
+    pub(crate) pacemaker: PacemakerOption,
+
     /// Threads to use [default: all].
     #[arg(long, value_name = "N", value_parser = clap::value_parser!(u16).range(1..=1024))]
     pub(crate) threads: Option<u16>,
@@ -99,6 +103,23 @@ pub(crate) enum AudienceName {
     Planner,
     /// Occupational health, bound to secrecy.
     Clinician,
+}
+
+/// A published model of the body clock.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, ValueEnum)]
+pub(crate) enum PacemakerOption {
+    /// Light and sleep-wake drive.
+    #[value(name = "hilaire2007")]
+    Hilaire2007,
+    /// Light drive, simpler model.
+    #[value(name = "forger1999")]
+    Forger1999,
+    /// Light drive, revised limit cycle.
+    #[value(name = "jewett1999")]
+    Jewett1999,
+    /// Light drive, macroscopic; read its shifts, its clock times stand early.
+    #[value(name = "hannay2019")]
+    Hannay2019,
 }
 
 /// What is printed on standard output.

@@ -103,8 +103,8 @@ fn event(day: i32, place: Place, side: f64) -> Result<f64, Daylight> {
 /// Declination (rad) and equation of time (min) at a moment, days of the common era.
 fn sun(moment: f64) -> (f64, f64) {
     let t = (moment - J2000_FROM_COMMON_ERA) / 36_525.0;
-    let mean_longitude = 280.46646 + t * (36_000.76983 + 0.0003032 * t);
-    let anomaly = (357.52911 + t * (35_999.05029 - 0.0001537 * t)).to_radians();
+    let mean_longitude = 280.46646 + t * (36000.76983 + 0.0003032 * t);
+    let anomaly = (357.52911 + t * (35999.05029 - 0.0001537 * t)).to_radians();
     let eccentricity = 0.016708634 - t * (0.000042037 + 1.267e-7 * t);
     let centre = libm::sin(anomaly) * (1.914602 - t * (0.004817 + 0.000014 * t))
         + libm::sin(2.0 * anomaly) * (0.019993 - 0.000101 * t)

@@ -69,7 +69,7 @@ pub fn warm_up(models: &CoupledModels, members: &[Member], habits: &Habits) -> W
     );
     let lane_members = lanes_of(members);
     let pacemaker = &models.pacemaker;
-    let stiffness = lane_members.map(|m| pacemaker.stiffness(m.tau_h));
+    let pace = lane_members.map(|m| pacemaker.pace(m.tau_h));
     let mut state = pacemaker.start();
     let mut readers: [MarkerReader; LANES] = std::array::from_fn(|_| MarkerReader::new());
     let mut last_cbtmin = [0.0; LANES];
@@ -87,10 +87,10 @@ pub fn warm_up(models: &CoupledModels, members: &[Member], habits: &Habits) -> W
             drive.set(pacemaker, lane, lux * member.sensitivity, asleep);
         }
         let before = state.clone();
-        pacemaker.step(&mut state, &drive.input, &stiffness);
+        pacemaker.step(&mut state, &drive.input, &pace);
         for lane in 0..LANES {
-            let from = (before.x[lane], before.xc[lane]);
-            let to = (state.x[lane], state.xc[lane]);
+            let from = (before.first[lane], before.second[lane]);
+            let to = (state.first[lane], state.second[lane]);
             let at = Minute(minute).as_f64();
             if let Some(cbtmin) = readers[lane].read(pacemaker, at, from, to) {
                 last_cbtmin[lane] = cbtmin;
@@ -171,7 +171,7 @@ impl LightDrive {
 /// ```
 pub fn live(models: &CoupledModels, warm: &WarmUnit, timeline: &Timeline) -> Vec<MemberTrack> {
     let lane_members = lanes_of(&warm.members);
-    let stiffness = lane_members.map(|m| models.pacemaker.stiffness(m.tau_h));
+    let pace = lane_members.map(|m| models.pacemaker.pace(m.tau_h));
     let mut people: Vec<Person> = warm
         .members
         .iter()
@@ -188,11 +188,11 @@ pub fn live(models: &CoupledModels, warm: &WarmUnit, timeline: &Timeline) -> Vec
             drive.set(&models.pacemaker, lane, lux, person.sleeper.asleep());
         }
         let before = state.clone();
-        models.pacemaker.step(&mut state, &drive.input, &stiffness);
+        models.pacemaker.step(&mut state, &drive.input, &pace);
         for (lane, person) in people.iter_mut().enumerate() {
             person.sleeper.live_a_minute(&models.sleep);
-            let from = (before.x[lane], before.xc[lane]);
-            let to = (state.x[lane], state.xc[lane]);
+            let from = (before.first[lane], before.second[lane]);
+            let to = (state.first[lane], state.second[lane]);
             person.read_marker(&models.pacemaker, minute, from, to);
         }
     }

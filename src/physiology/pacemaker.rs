@@ -1,16 +1,15 @@
-//! Light- and sleep-driven circadian pacemaker, `hilaire2007`: how does the clock move?
+//! Circadian pacemakers: how does the clock move under light, sleep and waking?
 //!
-//! | symbol | meaning | unit |
-//! |---|---|---|
-//! | `x`, `xc` | state of the oscillator, clockwise in the (x, xc) plane | 1 |
-//! | `n` | share of activated photoreceptors | 1 |
-//! | `alpha` | activation rate by light | 1/min |
-//! | `tau` | intrinsic period | h |
-//!
-//! The members of a unit are the lanes: one formula, no branch, no library function inside the loop over lanes.
+//! Four published models, each with its own whole parameter set; the state is always three numbers a member:
+//! `x`, `xc`, `n` for the oscillators of van der Pol type, `R`, `psi`, `n` for the macroscopic one.
+//! The members of a unit are the lanes: one formula, no branch on data, no library function inside the loop over lanes.
 
-use super::parameters::PacemakerSet;
-use crate::numeric::lane;
+mod hannay;
+mod van_der_pol;
+
+use super::parameters::{PacemakerReading, PacemakerSet};
+use hannay::Hannay;
+use van_der_pol::{Form, VanDerPol};
 
 /// Members simulated side by side.
 pub const LANES: usize = 16;
@@ -23,10 +22,10 @@ const STEP_H: f64 = 1.0 / 60.0;
 /// State of the members of a unit, structure of arrays.
 #[derive(Debug, Clone, PartialEq)]
 pub struct PacemakerState {
-    /// First oscillator variable.
-    pub x: [f64; LANES],
-    /// Second oscillator variable.
-    pub xc: [f64; LANES],
+    /// `x`, or `R`.
+    pub first: [f64; LANES],
+    /// `xc`, or `psi` (radians, growing).
+    pub second: [f64; LANES],
     /// Share of activated photoreceptors.
     pub n: [f64; LANES],
 }
@@ -40,56 +39,137 @@ pub struct PacemakerInput {
     pub arousal: [f64; LANES],
 }
 
-/// The numbers of the equations, ready for use.
+/// A pacemaker with the numbers of its set, ready for use.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Pacemaker {
+    model: Model,
+    light: LightLaw,
+    reading: PacemakerReading,
+}
+
+#[derive(Debug, Clone, PartialEq)]
+enum Model {
+    VanDerPol(VanDerPol),
+    Hannay(Hannay),
+}
+
+/// Activation of the photoreceptors by light.
+#[derive(Debug, Clone, Copy, PartialEq)]
+struct LightLaw {
     alpha0: f64,
-    beta: f64,
-    gain: f64,
     exponent: f64,
-    i0_lux: f64,
-    i1_lux: f64,
-    mu: f64,
-    q: f64,
-    k: f64,
-    f: f64,
-    rho: f64,
-    awake_share: f64,
-    steepness: f64,
-    marker_angle: f64,
-    marker_offset_min: f64,
-    start: (f64, f64, f64),
+    i0: f64,
+    saturation: Saturation,
+}
+
+#[derive(Debug, Clone, Copy, PartialEq)]
+enum Saturation {
+    /// `alpha0 (I/I0)^p`
+    Open,
+    /// `alpha0 (I/I0)^p I/(I + I1)`, lux.
+    Dim(f64),
+    /// `alpha0 I^p/(I^p + I0)`
+    Hill,
 }
 
 impl Pacemaker {
     /// The equations with the numbers of a parameter set.
     pub fn new(set: &PacemakerSet) -> Self {
+        let (model, light) = match set {
+            PacemakerSet::Hilaire(s) => (
+                Model::VanDerPol(VanDerPol {
+                    form: Form::Revised,
+                    beta: s.process_l.beta.value,
+                    gain: s.process_l.gain.value,
+                    mu: s.process_p.mu.value,
+                    q: s.process_p.q.value,
+                    k: s.process_p.k.value,
+                    f: s.process_p.f.value,
+                    rho: s.non_photic.rho.value,
+                    awake_share: s.non_photic.awake_share.value,
+                    steepness: s.non_photic.steepness.value,
+                }),
+                LightLaw {
+                    alpha0: s.process_l.alpha0.value,
+                    exponent: s.process_l.exponent.value,
+                    i0: s.process_l.i0.value,
+                    saturation: Saturation::Dim(s.process_l.i1.value),
+                },
+            ),
+            PacemakerSet::Jewett(s) => (
+                Model::VanDerPol(VanDerPol {
+                    form: Form::Revised,
+                    beta: s.process_l.beta.value,
+                    gain: s.process_l.gain.value,
+                    mu: s.process_p.mu.value,
+                    q: s.process_p.q.value,
+                    k: s.process_p.k.value,
+                    f: s.process_p.f.value,
+                    rho: 0.0,
+                    awake_share: 0.0,
+                    steepness: 0.0,
+                }),
+                LightLaw {
+                    alpha0: s.process_l.alpha0.value,
+                    exponent: s.process_l.exponent.value,
+                    i0: s.process_l.i0.value,
+                    saturation: Saturation::Open,
+                },
+            ),
+            PacemakerSet::Forger(s) => (
+                Model::VanDerPol(VanDerPol {
+                    form: Form::Simple,
+                    beta: s.process_l.beta.value,
+                    gain: s.process_l.gain.value,
+                    mu: s.process_p.mu.value,
+                    q: 0.0,
+                    k: s.process_p.k.value,
+                    f: s.process_p.f.value,
+                    rho: 0.0,
+                    awake_share: 0.0,
+                    steepness: 0.0,
+                }),
+                LightLaw {
+                    alpha0: s.process_l.alpha0.value,
+                    exponent: s.process_l.exponent.value,
+                    i0: s.process_l.i0.value,
+                    saturation: Saturation::Open,
+                },
+            ),
+            PacemakerSet::Hannay(s) => (
+                Model::Hannay(Hannay {
+                    beta: s.process_l.beta.value,
+                    gain: s.process_l.gain.value,
+                    coupling: s.oscillator.coupling.value,
+                    gamma: s.oscillator.gamma.value,
+                    beta1: s.oscillator.beta1.value,
+                    a1: s.oscillator.a1.value,
+                    a2: s.oscillator.a2.value,
+                    beta_l1: s.oscillator.beta_l1.value,
+                    beta_l2: s.oscillator.beta_l2.value,
+                    sigma: s.oscillator.sigma.value,
+                }),
+                LightLaw {
+                    alpha0: s.process_l.alpha0.value,
+                    exponent: s.process_l.exponent.value,
+                    i0: s.process_l.i0.value,
+                    saturation: Saturation::Hill,
+                },
+            ),
+        };
         Self {
-            alpha0: set.process_l.alpha0.value,
-            beta: set.process_l.beta.value,
-            gain: set.process_l.gain.value,
-            exponent: set.process_l.exponent.value,
-            i0_lux: set.process_l.i0.value,
-            i1_lux: set.process_l.i1.value,
-            mu: set.process_p.mu.value,
-            q: set.process_p.q.value,
-            k: set.process_p.k.value,
-            f: set.process_p.f.value,
-            rho: set.non_photic.rho.value,
-            awake_share: set.non_photic.awake_share.value,
-            steepness: set.non_photic.steepness.value,
-            marker_angle: set.marker.angle.value.to_radians(),
-            marker_offset_min: set.marker.cbtmin_offset.value * 60.0,
-            start: (set.start.x.value, set.start.xc.value, set.start.n.value),
+            model,
+            light,
+            reading: set.reading(),
         }
     }
 
     /// The state from which habitual days are lived.
     pub fn start(&self) -> PacemakerState {
-        let (x, xc, n) = self.start;
+        let [first, second, n] = self.reading.start;
         PacemakerState {
-            x: [x; LANES],
-            xc: [xc; LANES],
+            first: [first; LANES],
+            second: [second; LANES],
             n: [n; LANES],
         }
     }
@@ -99,20 +179,22 @@ impl Pacemaker {
     /// # Equation
     ///
     /// ```text
-    /// alpha(I) = alpha0 (I / I0)^p I / (I + I1)
+    /// alpha(I) = alpha0 (I / I0)^p                      forger1999, jewett1999
+    /// alpha(I) = alpha0 (I / I0)^p I / (I + I1)         hilaire2007
+    /// alpha(I) = alpha0 I^p / (I^p + I0)                hannay2019
     /// ```
     ///
     /// # Units
     ///
     /// `light_lux` photopic lux at the eye; result 1/min.
     ///
-    /// # Source
-    ///
-    /// St. Hilaire et al. 2007, J Theor Biol 247:583. In one public code the two constants are swapped; this is the form of the other.
-    ///
     /// # Range
     ///
     /// Darkness and anything below give 0.
+    ///
+    /// # Source
+    ///
+    /// As the parameter set of the model. In one public code of hilaire2007 the two constants are swapped; this is the form of the other.
     ///
     /// # Example
     ///
@@ -127,20 +209,36 @@ impl Pacemaker {
         if light_lux <= 0.0 {
             return 0.0;
         }
-        self.alpha0 * libm::pow(light_lux / self.i0_lux, self.exponent) * light_lux
-            / (light_lux + self.i1_lux)
+        let law = &self.light;
+        let relative = || libm::pow(light_lux / law.i0, law.exponent);
+        law.alpha0
+            * match law.saturation {
+                Saturation::Open => relative(),
+                Saturation::Dim(i1_lux) => relative() * light_lux / (light_lux + i1_lux),
+                Saturation::Hill => {
+                    let raised = libm::pow(light_lux, law.exponent);
+                    raised / (raised + law.i0)
+                }
+            }
     }
 
-    /// Non-photic drive before its phase factor: `rho (1/3 - sigma)`, sigma = 1 asleep.
+    /// Non-photic drive before its phase factor: `rho (1/3 - sigma)`, sigma = 1 asleep; 0 in models without one.
     pub fn arousal(&self, asleep: bool) -> f64 {
-        let sigma = if asleep { 1.0 } else { 0.0 };
-        self.rho * (self.awake_share - sigma)
+        match &self.model {
+            Model::VanDerPol(model) => {
+                let sigma = if asleep { 1.0 } else { 0.0 };
+                model.rho * (model.awake_share - sigma)
+            }
+            Model::Hannay(_) => 0.0,
+        }
     }
 
-    /// `(24 / (f tau))^2`, the stiffness that gives each member its period.
-    pub fn stiffness(&self, tau_h: f64) -> f64 {
-        let ratio = 24.0 / (self.f * tau_h);
-        ratio * ratio
+    /// The constant that gives a member its dark period: `(24 / (f tau))^2`, or the natural frequency in rad/h.
+    pub fn pace(&self, tau_h: f64) -> f64 {
+        match &self.model {
+            Model::VanDerPol(model) => model.stiffness(tau_h),
+            Model::Hannay(model) => model.frequency(tau_h),
+        }
     }
 
     /// One minute of classical Runge-Kutta under constant light and sleep state.
@@ -148,23 +246,29 @@ impl Pacemaker {
     /// # Equation
     ///
     /// ```text
-    /// B      = G (1 - n) alpha (1 - 0.4 x)(1 - 0.4 xc);  Ns = rho (1/3 - sigma)(1 - tanh 10 x)
-    /// dx/dt  = (pi/12) [ xc + mu (x/3 + 4 x^3/3 - 256 x^7/105) + B + Ns ]
-    /// dxc/dt = (pi/12) { q B xc - x [ (24/(f tau))^2 + k B ] }
-    /// dn/dt  = 60 [ alpha (1 - n) - beta n ]                      (rates per minute, time in hours)
+    /// van der Pol type, B = G (1 - n) alpha (1 - 0.4 x)(1 - 0.4 xc), Ns = rho (1/3 - sigma)(1 - tanh 10 x):
+    /// forger1999   dx/dt  = (pi/12) [ xc + B ]
+    ///              dxc/dt = (pi/12) { mu (xc - 4 xc^3/3) - x [ (24/(f tau))^2 + k B ] }
+    /// jewett1999, hilaire2007 (with Ns)
+    ///              dx/dt  = (pi/12) [ xc + mu (x/3 + 4 x^3/3 - 256 x^7/105) + B + Ns ]
+    ///              dxc/dt = (pi/12) { q B xc - x [ (24/(f tau))^2 + k B ] }
+    /// hannay2019, B = G (1 - n) alpha:
+    ///              dR/dt   = -gamma R + (K/2) cos(b1) R (1 - R^4) + (B/2) [ A1 (1 - R^4) cos(psi + b2) + A2 R (1 - R^8) cos(2 psi + b3) ]
+    ///              dpsi/dt = omega0 + (K/2) sin(b1)(1 + R^4) + sigma B - (B/2) [ A1 (R^3 + 1/R) sin(psi + b2) + A2 (1 + R^8) sin(2 psi + b3) ]
+    /// all          dn/dt = 60 [ alpha (1 - n) - beta n ]                      (rates per minute, time in hours)
     /// ```
-    ///
-    /// # Source
-    ///
-    /// St. Hilaire et al. 2007; process P of Jewett, Forger and Kronauer 1999, J Biol Rhythms 14:493. Deviations: none.
     ///
     /// # Units
     ///
-    /// `state` and `input` hold one value per member; `stiffness` is that of [`Pacemaker::stiffness`]. The state is moved by one minute.
+    /// `state` and `input` hold one value per member; `pace` is that of [`Pacemaker::pace`]. The state is moved by one minute.
     ///
     /// # Range
     ///
-    /// Up to 10 000 lux the phase error of one-minute steps is below 0.001 min against an adaptive solver; at 100 000 lux 0.001 min.
+    /// Up to 10 000 lux the phase error of one-minute steps is below 0.001 min against an adaptive solver; at 100 000 lux below 0.02 min.
+    ///
+    /// # Source
+    ///
+    /// As the parameter set of the model. Deviations: none.
     ///
     /// # Example
     ///
@@ -174,54 +278,34 @@ impl Pacemaker {
     /// let pacemaker = Pacemaker::new(&ModelSets::embedded().pacemaker);
     /// let mut state = pacemaker.start();
     /// let dark = PacemakerInput { alpha: [0.0; LANES], arousal: [pacemaker.arousal(true); LANES] };
-    /// let stiffness = [pacemaker.stiffness(24.2); LANES];
+    /// let pace = [pacemaker.pace(24.2); LANES];
     /// for _ in 0..60 {
-    ///     pacemaker.step(&mut state, &dark, &stiffness);
+    ///     pacemaker.step(&mut state, &dark, &pace);
     /// }
     /// // Photoreceptors recover in the dark: n = 0.3 exp(-60 * 0.007).
     /// assert!((state.n[0] - 0.3 * (-0.42_f64).exp()).abs() < 1e-6);
     /// ```
-    pub fn step(
-        &self,
-        state: &mut PacemakerState,
-        input: &PacemakerInput,
-        stiffness: &[f64; LANES],
-    ) {
-        for (i, &stiffness) in stiffness.iter().enumerate() {
-            let rate =
-                |x, xc, n| self.rate([x, xc, n], input.alpha[i], input.arousal[i], stiffness);
-            let (x, xc, n) = (state.x[i], state.xc[i], state.n[i]);
-            let half = STEP_H / 2.0;
-            let a = rate(x, xc, n);
-            let b = rate(x + half * a[0], xc + half * a[1], n + half * a[2]);
-            let c = rate(x + half * b[0], xc + half * b[1], n + half * b[2]);
-            let d = rate(x + STEP_H * c[0], xc + STEP_H * c[1], n + STEP_H * c[2]);
-            let sixth = STEP_H / 6.0;
-            state.x[i] = x + sixth * (a[0] + 2.0 * b[0] + 2.0 * c[0] + d[0]);
-            state.xc[i] = xc + sixth * (a[1] + 2.0 * b[1] + 2.0 * c[1] + d[1]);
-            state.n[i] = n + sixth * (a[2] + 2.0 * b[2] + 2.0 * c[2] + d[2]);
+    pub fn step(&self, state: &mut PacemakerState, input: &PacemakerInput, pace: &[f64; LANES]) {
+        // The model is chosen once, outside the loop over lanes.
+        match &self.model {
+            Model::VanDerPol(model) => step_lanes(state, |lane, now| {
+                model.step(now, input.alpha[lane], input.arousal[lane], pace[lane])
+            }),
+            Model::Hannay(model) => step_lanes(state, |lane, now| {
+                model.step(now, input.alpha[lane], pace[lane])
+            }),
         }
     }
 
-    /// Right-hand side, per hour.
-    #[inline]
-    fn rate(&self, [x, xc, n]: [f64; 3], alpha: f64, arousal: f64, stiffness: f64) -> [f64; 3] {
-        const P12: f64 = std::f64::consts::PI / 12.0;
-        let drive = self.gain * alpha * (1.0 - n) * (1.0 - 0.4 * x) * (1.0 - 0.4 * xc);
-        let x3 = x * x * x;
-        let non_photic = arousal * (1.0 - lane::tanh(self.steepness * x));
-        let limit_cycle = self.mu * (x / 3.0 + 4.0 * x3 / 3.0 - 256.0 * x3 * x3 * x / 105.0);
-        [
-            P12 * (xc + limit_cycle + drive + non_photic),
-            P12 * (self.q * drive * xc - x * (stiffness + self.k * drive)),
-            60.0 * (alpha * (1.0 - n) - self.beta * n),
-        ]
-    }
-
     /// Signed angle past the marker, in (-pi, pi]; it rises through 0 once per cycle.
-    fn angle_past_marker(&self, x: f64, xc: f64) -> f64 {
+    fn angle_past_marker(&self, first: f64, second: f64) -> f64 {
+        let angle = match &self.model {
+            // The oscillator runs clockwise.
+            Model::VanDerPol(_) => -libm::atan2(second, first),
+            Model::Hannay(_) => second,
+        };
         crate::numeric::circular::wrap_half(
-            -libm::atan2(xc, x) - self.marker_angle,
+            angle - self.reading.angle_rad,
             2.0 * std::f64::consts::PI,
         )
     }
@@ -234,6 +318,38 @@ impl Pacemaker {
         let to = self.angle_past_marker(after.0, after.1);
         (from < 0.0 && to >= 0.0 && to - from < 1.0).then(|| from / (from - to))
     }
+}
+
+/// Moves every lane by its own step.
+#[inline]
+fn step_lanes(state: &mut PacemakerState, step: impl Fn(usize, [f64; 3]) -> [f64; 3]) {
+    let lanes = state
+        .first
+        .iter_mut()
+        .zip(&mut state.second)
+        .zip(&mut state.n);
+    for (lane, ((first, second), n)) in lanes.enumerate() {
+        [*first, *second, *n] = step(lane, [*first, *second, *n]);
+    }
+}
+
+/// One classical Runge-Kutta step of three variables.
+#[inline]
+fn runge_kutta(state: [f64; 3], step: f64, rate: impl Fn([f64; 3]) -> [f64; 3]) -> [f64; 3] {
+    let moved = |by: f64, k: [f64; 3]| {
+        [
+            state[0] + by * k[0],
+            state[1] + by * k[1],
+            state[2] + by * k[2],
+        ]
+    };
+    let half = step / 2.0;
+    let a = rate(state);
+    let b = rate(moved(half, a));
+    let c = rate(moved(half, b));
+    let d = rate(moved(step, c));
+    let sixth = step / 6.0;
+    [0, 1, 2].map(|i| state[i] + sixth * (a[i] + 2.0 * b[i] + 2.0 * c[i] + d[i]))
 }
 
 /// Finds `CBTmin` as the state moves on.
@@ -253,7 +369,7 @@ impl MarkerReader {
     /// A reader that knows the last `CBTmin`, minutes since the epoch.
     pub fn after(pacemaker: &Pacemaker, cbtmin_min: f64) -> Self {
         Self {
-            last_crossing_min: cbtmin_min - pacemaker.marker_offset_min,
+            last_crossing_min: cbtmin_min - pacemaker.reading.cbtmin_offset_min,
         }
     }
 
@@ -270,7 +386,7 @@ impl MarkerReader {
             return None;
         }
         self.last_crossing_min = crossing;
-        Some(crossing + pacemaker.marker_offset_min)
+        Some(crossing + pacemaker.reading.cbtmin_offset_min)
     }
 }
 

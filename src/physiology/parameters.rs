@@ -40,20 +40,178 @@ macro_rules! parameter_set {
 }
 
 parameter_set! {
-    /// `hilaire2007`: pacemaker driven by light and by sleep and waking.
-    PacemakerSet {
+    /// `forger1999`: pacemaker driven by light, simpler model.
+    ForgerSet {
         /// Light to drive.
-        process_l: ProcessL { alpha0, beta, gain, exponent, i0, i1 }
+        process_l: ForgerLight { alpha0, beta, gain, exponent, i0 }
         /// The oscillator.
-        process_p: ProcessP { mu, q, k, f }
-        /// Drive of sleep and waking.
-        non_photic: NonPhotic { rho, awake_share, steepness }
+        process_p: ForgerOscillator { mu, k, f }
         /// Where phase is read.
-        marker: Marker { angle, cbtmin_offset, dlmo_before_cbtmin, melatonin_duration }
+        marker: ForgerMarker { angle, cbtmin_offset, dlmo_before_cbtmin, melatonin_duration }
         /// State at the first habitual midnight.
-        start: PacemakerStart { x, xc, n, habitual_days }
+        start: ForgerStart { first, second, n, habitual_days }
     }
 }
+
+parameter_set! {
+    /// `jewett1999`: pacemaker driven by light, revised limit cycle.
+    JewettSet {
+        /// Light to drive.
+        process_l: JewettLight { alpha0, beta, gain, exponent, i0 }
+        /// The oscillator.
+        process_p: JewettOscillator { mu, q, k, f }
+        /// Where phase is read.
+        marker: JewettMarker { angle, cbtmin_offset, dlmo_before_cbtmin, melatonin_duration }
+        /// State at the first habitual midnight.
+        start: JewettStart { first, second, n, habitual_days }
+    }
+}
+
+parameter_set! {
+    /// `hilaire2007`: pacemaker driven by light and by sleep and waking.
+    HilaireSet {
+        /// Light to drive.
+        process_l: HilaireLight { alpha0, beta, gain, exponent, i0, i1 }
+        /// The oscillator.
+        process_p: HilaireOscillator { mu, q, k, f }
+        /// Drive of sleep and waking.
+        non_photic: HilaireArousal { rho, awake_share, steepness }
+        /// Where phase is read.
+        marker: HilaireMarker { angle, cbtmin_offset, dlmo_before_cbtmin, melatonin_duration }
+        /// State at the first habitual midnight.
+        start: HilaireStart { first, second, n, habitual_days }
+    }
+}
+
+parameter_set! {
+    /// `hannay2019`: macroscopic pacemaker, single population.
+    HannaySet {
+        /// Light to drive.
+        process_l: HannayLight { alpha0, beta, gain, exponent, i0 }
+        /// The oscillator.
+        oscillator: HannayOscillator { coupling, gamma, beta1, a1, a2, beta_l1, beta_l2, sigma }
+        /// Where phase is read.
+        marker: HannayMarker { angle, cbtmin_offset, dlmo_before_cbtmin, melatonin_duration }
+        /// State at the first habitual midnight.
+        start: HannayStart { first, second, n, habitual_days }
+    }
+}
+
+/// A pacemaker by the publication it comes from.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
+pub enum PacemakerName {
+    /// Light and sleep-wake drive; the default.
+    Hilaire2007,
+    /// Light drive, simpler model.
+    Forger1999,
+    /// Light drive, revised limit cycle.
+    Jewett1999,
+    /// Light drive, macroscopic; its clock times stand early.
+    Hannay2019,
+}
+
+/// The whole parameter set of one pacemaker.
+#[derive(Debug, Clone, PartialEq)]
+pub enum PacemakerSet {
+    /// `hilaire2007`.
+    Hilaire(HilaireSet),
+    /// `forger1999`.
+    Forger(ForgerSet),
+    /// `jewett1999`.
+    Jewett(JewettSet),
+    /// `hannay2019`.
+    Hannay(HannaySet),
+}
+
+/// Where phase is read and where habitual days begin, whatever the model.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct PacemakerReading {
+    /// Polar angle of the marker, radians.
+    pub angle_rad: f64,
+    /// `CBTmin` after the marker, minutes.
+    pub cbtmin_offset_min: f64,
+    /// DLMO before `CBTmin`, minutes.
+    pub dlmo_before_cbtmin_min: f64,
+    /// From DLMO to melatonin offset, minutes.
+    pub melatonin_duration_min: f64,
+    /// First two state variables and `n` at the first habitual midnight.
+    pub start: [f64; 3],
+    /// Habitual days lived before the roster.
+    pub habitual_days: f64,
+}
+
+macro_rules! reading {
+    ($set:expr) => {
+        PacemakerReading {
+            angle_rad: $set.marker.angle.value.to_radians(),
+            cbtmin_offset_min: $set.marker.cbtmin_offset.value * 60.0,
+            dlmo_before_cbtmin_min: $set.marker.dlmo_before_cbtmin.value * 60.0,
+            melatonin_duration_min: $set.marker.melatonin_duration.value * 60.0,
+            start: [
+                $set.start.first.value,
+                $set.start.second.value,
+                $set.start.n.value,
+            ],
+            habitual_days: $set.start.habitual_days.value,
+        }
+    };
+}
+
+impl PacemakerSet {
+    /// The embedded set of a pacemaker.
+    ///
+    /// # Panics
+    ///
+    /// Never in a built program: a test reads every file.
+    pub fn embedded(name: PacemakerName) -> Self {
+        match name {
+            PacemakerName::Hilaire2007 => Self::Hilaire(
+                toml::from_str(include_str!("parameters/hilaire2007.toml")).expect(READ_BY_A_TEST),
+            ),
+            PacemakerName::Forger1999 => Self::Forger(
+                toml::from_str(include_str!("parameters/forger1999.toml")).expect(READ_BY_A_TEST),
+            ),
+            PacemakerName::Jewett1999 => Self::Jewett(
+                toml::from_str(include_str!("parameters/jewett1999.toml")).expect(READ_BY_A_TEST),
+            ),
+            PacemakerName::Hannay2019 => Self::Hannay(
+                toml::from_str(include_str!("parameters/hannay2019.toml")).expect(READ_BY_A_TEST),
+            ),
+        }
+    }
+
+    /// Where phase is read and where habitual days begin.
+    pub fn reading(&self) -> PacemakerReading {
+        match self {
+            Self::Hilaire(set) => reading!(set),
+            Self::Forger(set) => reading!(set),
+            Self::Jewett(set) => reading!(set),
+            Self::Hannay(set) => reading!(set),
+        }
+    }
+
+    /// Name of the set and its publication.
+    pub fn name_and_publication(&self) -> (&str, &str) {
+        match self {
+            Self::Hilaire(set) => (&set.name, &set.publication),
+            Self::Forger(set) => (&set.name, &set.publication),
+            Self::Jewett(set) => (&set.name, &set.publication),
+            Self::Hannay(set) => (&set.name, &set.publication),
+        }
+    }
+
+    /// Every number of the set with the key under which it stands.
+    pub fn listed(&self) -> Vec<(String, &Sourced)> {
+        match self {
+            Self::Hilaire(set) => set.listed(),
+            Self::Forger(set) => set.listed(),
+            Self::Jewett(set) => set.listed(),
+            Self::Hannay(set) => set.listed(),
+        }
+    }
+}
+
+const READ_BY_A_TEST: &str = "embedded parameter sets are read by a test";
 
 parameter_set! {
     /// `two-process`: sleep regulation.
@@ -129,27 +287,37 @@ pub struct ModelSets {
 }
 
 impl ModelSets {
-    /// The sets embedded in the program.
+    /// The sets embedded in the program, with the default pacemaker.
+    pub fn embedded() -> Self {
+        Self::with_pacemaker(PacemakerName::Hilaire2007)
+    }
+
+    /// The sets embedded in the program, with a pacemaker of one's choice.
     ///
     /// # Panics
     ///
     /// Never in a built program: a test reads every file.
-    pub fn embedded() -> Self {
-        const REASON: &str = "embedded parameter sets are read by a test";
+    pub fn with_pacemaker(name: PacemakerName) -> Self {
         Self {
-            pacemaker: toml::from_str(include_str!("parameters/hilaire2007.toml")).expect(REASON),
-            sleep: toml::from_str(include_str!("parameters/two-process.toml")).expect(REASON),
-            light: toml::from_str(include_str!("parameters/light.toml")).expect(REASON),
-            cascade: toml::from_str(include_str!("parameters/hpa-cascade.toml")).expect(REASON),
-            ensemble: toml::from_str(include_str!("parameters/ensemble.toml")).expect(REASON),
+            pacemaker: PacemakerSet::embedded(name),
+            sleep: toml::from_str(include_str!("parameters/two-process.toml"))
+                .expect(READ_BY_A_TEST),
+            light: toml::from_str(include_str!("parameters/light.toml")).expect(READ_BY_A_TEST),
+            cascade: toml::from_str(include_str!("parameters/hpa-cascade.toml"))
+                .expect(READ_BY_A_TEST),
+            ensemble: toml::from_str(include_str!("parameters/ensemble.toml"))
+                .expect(READ_BY_A_TEST),
         }
     }
 
     /// Every number in use: set, key, value with unit and source.
     pub fn listed(&self) -> Vec<(String, String, &Sourced)> {
         let sets = [
-            (&self.pacemaker.name, self.pacemaker.listed()),
-            (&self.sleep.name, self.sleep.listed()),
+            (
+                self.pacemaker.name_and_publication().0,
+                self.pacemaker.listed(),
+            ),
+            (self.sleep.name.as_str(), self.sleep.listed()),
             (&self.light.name, self.light.listed()),
             (&self.cascade.name, self.cascade.listed()),
             (&self.ensemble.name, self.ensemble.listed()),
@@ -157,7 +325,7 @@ impl ModelSets {
         sets.into_iter()
             .flat_map(|(set, list)| {
                 list.into_iter()
-                    .map(|(key, number)| (set.clone(), key, number))
+                    .map(|(key, number)| (set.to_owned(), key, number))
             })
             .collect()
     }
@@ -165,7 +333,7 @@ impl ModelSets {
     /// Publications behind the sets, in order of use.
     pub fn publications(&self) -> Vec<(&str, &str)> {
         vec![
-            (&self.pacemaker.name, &self.pacemaker.publication),
+            self.pacemaker.name_and_publication(),
             (&self.sleep.name, &self.sleep.publication),
             (&self.light.name, &self.light.publication),
             (&self.cascade.name, &self.cascade.publication),
@@ -180,12 +348,19 @@ mod tests {
 
     #[test]
     fn every_number_has_a_unit_and_a_source() {
-        let sets = ModelSets::embedded();
-        let list = sets.listed();
-        assert!(list.len() > 60, "only {} numbers are listed", list.len());
-        for (set, key, number) in list {
-            assert!(!number.unit.is_empty(), "{set} {key} has no unit");
-            assert!(!number.source.is_empty(), "{set} {key} has no source");
+        for name in [
+            PacemakerName::Hilaire2007,
+            PacemakerName::Forger1999,
+            PacemakerName::Jewett1999,
+            PacemakerName::Hannay2019,
+        ] {
+            let sets = ModelSets::with_pacemaker(name);
+            let list = sets.listed();
+            assert!(list.len() > 60, "only {} numbers are listed", list.len());
+            for (set, key, number) in list {
+                assert!(!number.unit.is_empty(), "{set} {key} has no unit");
+                assert!(!number.source.is_empty(), "{set} {key} has no source");
+            }
         }
     }
 }

@@ -224,3 +224,27 @@ fn the_place_of_the_site_sets_the_daylight() {
         last(&sunny)
     );
 }
+
+/// Published models of the same week differ, in size and even in direction: the choice is told with every date.
+#[test]
+fn another_pacemaker_gives_another_clock_and_says_so() {
+    let csv = pattern("NNNNN..", 3, &[('N', "23:00", "07:00")]);
+    let last = |name: acroshift::physiology::PacemakerName| {
+        let screening = acroshift::Screening {
+            pacemaker: name,
+            ..crate::rosters::screening(&["eu-wtd"])
+        };
+        let report = crate::rosters::report_with(&csv, "UTC", &screening);
+        let windows = &report.lines[0].windows;
+        let displacement = windows[windows.len() - 1].cbtmin_displacement_h.all.median;
+        (report.provenance.pacemaker, displacement)
+    };
+    use acroshift::physiology::PacemakerName as Name;
+    let (default, here) = last(Name::Hilaire2007);
+    let (other, there) = last(Name::Forger1999);
+    assert_eq!(
+        (default.as_str(), other.as_str()),
+        ("hilaire2007", "forger1999")
+    );
+    assert!((here - there).abs() > 0.2, "{here} {there}");
+}

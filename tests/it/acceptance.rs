@@ -3,6 +3,7 @@
 use crate::rosters::{pattern, read, report};
 use crate::scratch::{messages, results, run};
 use acroshift::assessment::WindowClass;
+use acroshift::physiology::PacemakerName;
 use acroshift::report::ScreenReport;
 use serde_json::Value;
 
@@ -229,7 +230,7 @@ fn the_place_of_the_site_sets_the_daylight() {
 #[test]
 fn another_pacemaker_gives_another_clock_and_says_so() {
     let csv = pattern("NNNNN..", 3, &[('N', "23:00", "07:00")]);
-    let last = |name: acroshift::physiology::PacemakerName| {
+    let last = |name: PacemakerName| {
         let screening = acroshift::Screening {
             pacemaker: name,
             ..crate::rosters::screening(&["eu-wtd"])
@@ -239,9 +240,8 @@ fn another_pacemaker_gives_another_clock_and_says_so() {
         let displacement = windows[windows.len() - 1].cbtmin_displacement_h.all.median;
         (report.provenance.pacemaker, displacement)
     };
-    use acroshift::physiology::PacemakerName as Name;
-    let (default, here) = last(Name::Hilaire2007);
-    let (other, there) = last(Name::Forger1999);
+    let (default, here) = last(PacemakerName::Hilaire2007);
+    let (other, there) = last(PacemakerName::Forger1999);
     assert_eq!(
         (default.as_str(), other.as_str()),
         ("hilaire2007", "forger1999")

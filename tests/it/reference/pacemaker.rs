@@ -189,10 +189,13 @@ fn check_state(label: &str, found: [f64; 3], expected: [f64; 3]) {
     }
 }
 
+/// Clock hour of the marker and state at midnight, model by model.
+type Entrained = [(f64, [f64; 3]); 4];
+
 /// Section 7.2 of the reference page: marker after 58 days and state at midnight.
 #[test]
 fn entrained_phase_and_state_agree_with_the_adaptive_solver() {
-    let schedules: [(Pattern, [(f64, [f64; 3]); 4]); 3] = [
+    let schedules: [(Pattern, Entrained); 3] = [
         (
             LD1000,
             [

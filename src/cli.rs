@@ -1,6 +1,7 @@
 //! Arguments are parsed, files are read and written, and an exit code is chosen; everything else is the library's.
 
 mod arguments;
+mod explain;
 mod output;
 mod screen;
 
@@ -72,6 +73,7 @@ pub(crate) fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
     };
     let result = match &arguments.command {
         Command::Screen(options) => screen::run(options),
+        Command::Explain(options) => explain::run(options),
     };
     match result {
         Ok(ending) => ExitCode::from(ending.code()),

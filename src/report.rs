@@ -7,6 +7,7 @@ pub mod audience;
 pub mod cautions;
 pub mod diagnostics;
 pub mod document;
+pub mod explain;
 pub mod figure;
 pub mod figures;
 pub mod findings;

@@ -9,6 +9,9 @@ const EXAMPLE: &str = "Example, on the demo roster:
 
 Exit codes: 0 done; 1 findings at or above --fail-on; 2 wrong usage; 3 input errors; 4 the computer refused.";
 
+const EXPLAIN_EXAMPLE: &str = "Example, a rule that the demo roster does not meet:
+  acroshift explain uk-daily-rest";
+
 /// Names the compressed recovery windows of a work roster, with law, advice and model side by side.
 #[derive(Debug, Parser)]
 #[command(name = "acroshift", version, about, arg_required_else_help = true)]
@@ -24,6 +27,17 @@ pub(crate) enum Command {
     /// Screen rosters: which recovery windows are compressed, and why.
     #[command(after_help = EXAMPLE)]
     Screen(ScreenOptions),
+    /// Explain a code: a problem of the input, a finding, a rule or a rule pack.
+    #[command(after_help = EXPLAIN_EXAMPLE)]
+    Explain(ExplainOptions),
+}
+
+/// Options of `explain`.
+#[derive(Debug, Args)]
+pub(crate) struct ExplainOptions {
+    /// A code as the program prints it: T21, compressed-rest, uk-daily-rest, uk-wtr.
+    #[arg(value_name = "CODE")]
+    pub(crate) code: String,
 }
 
 /// Options of `screen`.

@@ -2,6 +2,7 @@
 
 use crate::report::diagnostics::DiagnosticRow;
 use crate::report::document::{FindingRow, ScreenReport};
+use crate::report::explain::Explanation;
 use crate::report::wording::counted;
 use std::collections::BTreeMap;
 use std::io::{self, Write};
@@ -153,6 +154,20 @@ fn whom(finding: &FindingRow) -> String {
         (None, Some(line)) => format!("line {line}"),
         (None, None) => String::new(),
     }
+}
+
+/// Writes an explanation.
+///
+/// # Errors
+///
+/// Whatever the writer refuses.
+pub fn write_explanation(explanation: &Explanation, out: &mut dyn Write) -> io::Result<()> {
+    paragraph(out, &explanation.head)?;
+    for text in &explanation.paragraphs {
+        writeln!(out)?;
+        paragraph(out, text)?;
+    }
+    Ok(())
 }
 
 /// Writes diagnostics with the lines they point to.

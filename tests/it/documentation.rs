@@ -70,3 +70,23 @@ fn help_ends_with_an_example_on_the_demo_roster() {
 fn the_changelog_names_this_version() {
     assert!(text("CHANGELOG.md").contains(env!("CARGO_PKG_VERSION")));
 }
+
+#[test]
+fn codes_are_explained_and_slips_are_mended() {
+    let output = run(&["explain", "uk-daily-rest"]);
+    assert!(output.status.success());
+    let text = results(&output);
+    assert!(
+        text.contains("at least 11 h") && text.contains("reg 10(1)"),
+        "{text}"
+    );
+    assert!(
+        text.lines().all(|line| line.chars().count() <= 80),
+        "{text}"
+    );
+    let slip = run(&["explain", "uk-dayly-rest"]);
+    assert_eq!(slip.status.code(), Some(2));
+    assert!(crate::scratch::messages(&slip).contains("did you mean uk-daily-rest?"));
+    let help = run(&["explain", "--help"]);
+    assert!(results(&help).contains("acroshift explain uk-daily-rest"));
+}

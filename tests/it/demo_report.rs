@@ -10,6 +10,7 @@ use acroshift::roster::lines;
 use acroshift::timeline::{Axis, HabitFile, SiteScene, timeline};
 use serde_json::Value;
 use std::collections::BTreeSet;
+use std::sync::OnceLock;
 
 fn demo_csv() -> String {
     std::fs::read_to_string(demo()).unwrap()
@@ -121,7 +122,19 @@ fn a_third_of_an_hour_of_sleep_changes_few_classes() {
     }
 }
 
-fn rendered(audience: &str) -> Vec<(String, String)> {
+/// Terminal text, HTML, JSON and CSV of the demo ward for one audience, made once.
+fn rendered(audience: &'static str) -> &'static [(String, String)] {
+    static PLANNER: OnceLock<Vec<(String, String)>> = OnceLock::new();
+    static CLINICIAN: OnceLock<Vec<(String, String)>> = OnceLock::new();
+    let made = if audience == "planner" {
+        &PLANNER
+    } else {
+        &CLINICIAN
+    };
+    made.get_or_init(|| render(audience))
+}
+
+fn render(audience: &str) -> Vec<(String, String)> {
     let out = folder(&format!("rendered-{audience}")).join("report");
     let output = run(&[
         "screen",

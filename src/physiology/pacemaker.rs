@@ -8,8 +8,9 @@ mod hannay;
 mod van_der_pol;
 
 use super::parameters::{PacemakerReading, PacemakerSet};
+use crate::units::Sourced;
 use hannay::Hannay;
-use van_der_pol::{Form, VanDerPol};
+use van_der_pol::{Arousal, Form, VanDerPol};
 
 /// Members simulated side by side.
 pub const LANES: usize = 16;
@@ -62,6 +63,17 @@ struct LightLaw {
     saturation: Saturation,
 }
 
+impl LightLaw {
+    fn new(alpha0: &Sourced, exponent: &Sourced, i0: &Sourced, saturation: Saturation) -> Self {
+        Self {
+            alpha0: alpha0.value,
+            exponent: exponent.value,
+            i0: i0.value,
+            saturation,
+        }
+    }
+}
+
 #[derive(Debug, Clone, Copy, PartialEq)]
 enum Saturation {
     /// `alpha0 (I/I0)^p`
@@ -85,16 +97,18 @@ impl Pacemaker {
                     q: s.process_p.q.value,
                     k: s.process_p.k.value,
                     f: s.process_p.f.value,
-                    rho: s.non_photic.rho.value,
-                    awake_share: s.non_photic.awake_share.value,
-                    steepness: s.non_photic.steepness.value,
+                    arousal: Arousal {
+                        rho: s.non_photic.rho.value,
+                        awake_share: s.non_photic.awake_share.value,
+                        steepness: s.non_photic.steepness.value,
+                    },
                 }),
-                LightLaw {
-                    alpha0: s.process_l.alpha0.value,
-                    exponent: s.process_l.exponent.value,
-                    i0: s.process_l.i0.value,
-                    saturation: Saturation::Dim(s.process_l.i1.value),
-                },
+                LightLaw::new(
+                    &s.process_l.alpha0,
+                    &s.process_l.exponent,
+                    &s.process_l.i0,
+                    Saturation::Dim(s.process_l.i1.value),
+                ),
             ),
             PacemakerSet::Jewett(s) => (
                 Model::VanDerPol(VanDerPol {
@@ -105,16 +119,14 @@ impl Pacemaker {
                     q: s.process_p.q.value,
                     k: s.process_p.k.value,
                     f: s.process_p.f.value,
-                    rho: 0.0,
-                    awake_share: 0.0,
-                    steepness: 0.0,
+                    arousal: Arousal::default(),
                 }),
-                LightLaw {
-                    alpha0: s.process_l.alpha0.value,
-                    exponent: s.process_l.exponent.value,
-                    i0: s.process_l.i0.value,
-                    saturation: Saturation::Open,
-                },
+                LightLaw::new(
+                    &s.process_l.alpha0,
+                    &s.process_l.exponent,
+                    &s.process_l.i0,
+                    Saturation::Open,
+                ),
             ),
             PacemakerSet::Forger(s) => (
                 Model::VanDerPol(VanDerPol {
@@ -125,16 +137,14 @@ impl Pacemaker {
                     q: 0.0,
                     k: s.process_p.k.value,
                     f: s.process_p.f.value,
-                    rho: 0.0,
-                    awake_share: 0.0,
-                    steepness: 0.0,
+                    arousal: Arousal::default(),
                 }),
-                LightLaw {
-                    alpha0: s.process_l.alpha0.value,
-                    exponent: s.process_l.exponent.value,
-                    i0: s.process_l.i0.value,
-                    saturation: Saturation::Open,
-                },
+                LightLaw::new(
+                    &s.process_l.alpha0,
+                    &s.process_l.exponent,
+                    &s.process_l.i0,
+                    Saturation::Open,
+                ),
             ),
             PacemakerSet::Hannay(s) => (
                 Model::Hannay(Hannay {
@@ -149,12 +159,12 @@ impl Pacemaker {
                     beta_l2: s.oscillator.beta_l2.value,
                     sigma: s.oscillator.sigma.value,
                 }),
-                LightLaw {
-                    alpha0: s.process_l.alpha0.value,
-                    exponent: s.process_l.exponent.value,
-                    i0: s.process_l.i0.value,
-                    saturation: Saturation::Hill,
-                },
+                LightLaw::new(
+                    &s.process_l.alpha0,
+                    &s.process_l.exponent,
+                    &s.process_l.i0,
+                    Saturation::Hill,
+                ),
             ),
         };
         Self {
@@ -227,7 +237,7 @@ impl Pacemaker {
         match &self.model {
             Model::VanDerPol(model) => {
                 let sigma = if asleep { 1.0 } else { 0.0 };
-                model.rho * (model.awake_share - sigma)
+                model.arousal.rho * (model.arousal.awake_share - sigma)
             }
             Model::Hannay(_) => 0.0,
         }

@@ -7,7 +7,7 @@ use crate::units::Sourced;
 use serde::Deserialize;
 
 macro_rules! parameter_set {
-    ($(#[$about:meta])* $set:ident { $($(#[$section_about:meta])* $section:ident: $type:ident { $($key:ident),* $(,)? })* }) => {
+    ($(#[$about:meta])* $set:ident $(with $($shared:ident: $shared_type:ident),+)? { $($(#[$section_about:meta])* $section:ident: $type:ident { $($key:ident),* $(,)? })* }) => {
         $(#[$about])*
         #[derive(Debug, Clone, PartialEq, Deserialize)]
         #[serde(deny_unknown_fields)]
@@ -17,15 +17,19 @@ macro_rules! parameter_set {
             /// Where the model was published.
             pub publication: String,
             $($(#[$section_about])* pub $section: $type,)*
+            $($(#[doc = "As in every set of its family."] pub $shared: $shared_type,)+)?
         }
 
         impl $set {
             /// Every number of the set with the key under which it stands.
             pub fn listed(&self) -> Vec<(String, &Sourced)> {
-                vec![$($((
+                let own = vec![$($((
                     concat!(stringify!($section), ".", stringify!($key)).to_owned(),
                     &self.$section.$key,
-                ),)*)*]
+                ),)*)*];
+                own.into_iter()
+                    $($(.chain(self.$shared.listed(stringify!($shared))))+)?
+                    .collect()
             }
         }
 
@@ -39,61 +43,71 @@ macro_rules! parameter_set {
     };
 }
 
+macro_rules! shared_section {
+    ($(#[$about:meta])* $type:ident { $($key:ident),* $(,)? }) => {
+        $(#[$about])*
+        #[derive(Debug, Clone, PartialEq, Deserialize)]
+        #[serde(deny_unknown_fields)]
+        #[expect(missing_docs, reason = "each number bears its unit and source in the file")]
+        pub struct $type { $(pub $key: Sourced,)* }
+
+        impl $type {
+            fn listed(&self, section: &str) -> Vec<(String, &Sourced)> {
+                vec![$((format!("{section}.{}", stringify!($key)), &self.$key),)*]
+            }
+        }
+    };
+}
+
+shared_section! {
+    /// Where phase is read.
+    PacemakerMarker { angle, cbtmin_offset, dlmo_before_cbtmin, melatonin_duration }
+}
+
+shared_section! {
+    /// State at the first habitual midnight.
+    HabitualStart { first, second, n, habitual_days }
+}
+
 parameter_set! {
     /// `forger1999`: pacemaker driven by light, simpler model.
-    ForgerSet {
+    ForgerSet with marker: PacemakerMarker, start: HabitualStart {
         /// Light to drive.
         process_l: ForgerLight { alpha0, beta, gain, exponent, i0 }
         /// The oscillator.
         process_p: ForgerOscillator { mu, k, f }
-        /// Where phase is read.
-        marker: ForgerMarker { angle, cbtmin_offset, dlmo_before_cbtmin, melatonin_duration }
-        /// State at the first habitual midnight.
-        start: ForgerStart { first, second, n, habitual_days }
     }
 }
 
 parameter_set! {
     /// `jewett1999`: pacemaker driven by light, revised limit cycle.
-    JewettSet {
+    JewettSet with marker: PacemakerMarker, start: HabitualStart {
         /// Light to drive.
         process_l: JewettLight { alpha0, beta, gain, exponent, i0 }
         /// The oscillator.
         process_p: JewettOscillator { mu, q, k, f }
-        /// Where phase is read.
-        marker: JewettMarker { angle, cbtmin_offset, dlmo_before_cbtmin, melatonin_duration }
-        /// State at the first habitual midnight.
-        start: JewettStart { first, second, n, habitual_days }
     }
 }
 
 parameter_set! {
     /// `hilaire2007`: pacemaker driven by light and by sleep and waking.
-    HilaireSet {
+    HilaireSet with marker: PacemakerMarker, start: HabitualStart {
         /// Light to drive.
         process_l: HilaireLight { alpha0, beta, gain, exponent, i0, i1 }
         /// The oscillator.
         process_p: HilaireOscillator { mu, q, k, f }
         /// Drive of sleep and waking.
         non_photic: HilaireArousal { rho, awake_share, steepness }
-        /// Where phase is read.
-        marker: HilaireMarker { angle, cbtmin_offset, dlmo_before_cbtmin, melatonin_duration }
-        /// State at the first habitual midnight.
-        start: HilaireStart { first, second, n, habitual_days }
     }
 }
 
 parameter_set! {
     /// `hannay2019`: macroscopic pacemaker, single population.
-    HannaySet {
+    HannaySet with marker: PacemakerMarker, start: HabitualStart {
         /// Light to drive.
         process_l: HannayLight { alpha0, beta, gain, exponent, i0 }
         /// The oscillator.
         oscillator: HannayOscillator { coupling, gamma, beta1, a1, a2, beta_l1, beta_l2, sigma }
-        /// Where phase is read.
-        marker: HannayMarker { angle, cbtmin_offset, dlmo_before_cbtmin, melatonin_duration }
-        /// State at the first habitual midnight.
-        start: HannayStart { first, second, n, habitual_days }
     }
 }
 
@@ -140,21 +154,17 @@ pub struct PacemakerReading {
     pub habitual_days: f64,
 }
 
-macro_rules! reading {
-    ($set:expr) => {
-        PacemakerReading {
-            angle_rad: $set.marker.angle.value.to_radians(),
-            cbtmin_offset_min: $set.marker.cbtmin_offset.value * 60.0,
-            dlmo_before_cbtmin_min: $set.marker.dlmo_before_cbtmin.value * 60.0,
-            melatonin_duration_min: $set.marker.melatonin_duration.value * 60.0,
-            start: [
-                $set.start.first.value,
-                $set.start.second.value,
-                $set.start.n.value,
-            ],
-            habitual_days: $set.start.habitual_days.value,
+impl PacemakerReading {
+    fn new(marker: &PacemakerMarker, start: &HabitualStart) -> Self {
+        Self {
+            angle_rad: marker.angle.value.to_radians(),
+            cbtmin_offset_min: marker.cbtmin_offset.value * 60.0,
+            dlmo_before_cbtmin_min: marker.dlmo_before_cbtmin.value * 60.0,
+            melatonin_duration_min: marker.melatonin_duration.value * 60.0,
+            start: [start.first.value, start.second.value, start.n.value],
+            habitual_days: start.habitual_days.value,
         }
-    };
+    }
 }
 
 impl PacemakerSet {
@@ -183,10 +193,10 @@ impl PacemakerSet {
     /// Where phase is read and where habitual days begin.
     pub fn reading(&self) -> PacemakerReading {
         match self {
-            Self::Hilaire(set) => reading!(set),
-            Self::Forger(set) => reading!(set),
-            Self::Jewett(set) => reading!(set),
-            Self::Hannay(set) => reading!(set),
+            Self::Hilaire(set) => PacemakerReading::new(&set.marker, &set.start),
+            Self::Forger(set) => PacemakerReading::new(&set.marker, &set.start),
+            Self::Jewett(set) => PacemakerReading::new(&set.marker, &set.start),
+            Self::Hannay(set) => PacemakerReading::new(&set.marker, &set.start),
         }
     }
 

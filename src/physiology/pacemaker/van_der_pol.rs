@@ -29,6 +29,12 @@ pub(super) struct VanDerPol {
     pub(super) q: f64,
     pub(super) k: f64,
     pub(super) f: f64,
+    pub(super) arousal: Arousal,
+}
+
+/// Drive of sleep and waking; all 0 where light alone drives the clock.
+#[derive(Debug, Clone, Copy, PartialEq, Default)]
+pub(super) struct Arousal {
     pub(super) rho: f64,
     pub(super) awake_share: f64,
     pub(super) steepness: f64,
@@ -90,7 +96,7 @@ impl VanDerPol {
         let [x, xc, n] = state;
         let drive = self.drive(state, alpha);
         let x3 = x * x * x;
-        let non_photic = arousal * (1.0 - lane::tanh(self.steepness * x));
+        let non_photic = arousal * (1.0 - lane::tanh(self.arousal.steepness * x));
         let limit_cycle = self.mu * (x / 3.0 + 4.0 * x3 / 3.0 - 256.0 * x3 * x3 * x / 105.0);
         [
             P12 * (xc + limit_cycle + drive + non_photic),

@@ -40,12 +40,12 @@ pub struct ShiftFacts {
     pub night_h: f64,
 }
 
-/// The night of the register definition.
+/// The night of the register definition, clock hours; Finnish period-based work, Working Time Act; also Nordic register studies (from memory).
 const REGISTER_NIGHT: ClockWindow = ClockWindow {
     from_h: 23.0,
     to_h: 6.0,
 };
-/// Hours inside it from which a shift is a night shift.
+/// Hours inside it from which a shift is a night shift; source as of the window.
 const NIGHT_FROM_H: f64 = 3.0;
 
 /// Clock facts of [start, end).

@@ -158,7 +158,7 @@ fn segment(timeline: &Timeline, around: &[Around], from: Minute, to: Minute) -> 
     }
 }
 
-/// A duty after which morning light may be kept out: it ended 04-12 and began at or after 16 or before 02.
+/// A duty after which morning light may be kept out: it ended 04-12 and began at or after 16 or before 02 (clock hours, own choice, no source).
 fn ends_a_night(duty: &DutySpan) -> bool {
     let (start, end) = (duty.start_clock.get(), duty.end_clock.get());
     (4.0..12.0).contains(&end) && !(2.0..16.0).contains(&start)

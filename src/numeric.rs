@@ -2,6 +2,7 @@
 
 pub mod circular;
 pub mod cosine;
+pub mod instruction_set;
 pub mod lane;
 pub mod low_discrepancy;
 pub mod periodic_table;

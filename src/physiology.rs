@@ -17,6 +17,7 @@ pub mod pacemaker;
 pub mod parameters;
 pub mod sleep;
 pub mod track;
+pub mod unit;
 
 pub use day::CortisolDay;
 pub use ensemble::{Member, Sampling, members};
@@ -24,16 +25,23 @@ pub use parameters::{ModelSets, PacemakerName};
 pub use track::{MemberTrack, SleepEpisode};
 
 use crate::numeric::quantile::{Quantiles, quantiles};
-use crate::timeline::Timeline;
+use crate::numeric::instruction_set::InstructionSet;
+use crate::timeline::{Habits, Timeline};
 use crate::units::Minute;
-use cascade::{Cascade, SleepDebt};
+use cascade::{Cascade, Rows, SleepDebt};
 use coupled::{CoupledModels, ENTRY, REMEMBERED_DAYS, WarmUnit};
-use day::{CortisolSeries, Stretch, cortisol_day};
+use day::{DayReader, Stretch};
 use pacemaker::LANES;
 use rayon::prelude::*;
 
 /// Distance of the points of the cortisol curve, minutes.
 const CURVE_STEP_MIN: i64 = 30;
+/// Step of the cascade and distance of its rows, minutes: cortisol differs from one-minute steps by less than 0.1 nmol/L.
+pub const CORTISOL_STEP_MIN: i64 = 2;
+/// Rows are kept this long before the date that is read, minutes.
+const KEPT_BEFORE_MIN: i64 = 36 * 60;
+/// Rows are run this long past the date that is read, so that its quiescent interval ends.
+const RUN_PAST_MIN: i64 = 12 * 60;
 /// Cortisol is run from this minute, so that its start is forgotten at the entry.
 const CASCADE_FROM: Minute = Minute(ENTRY.0 - (REMEMBERED_DAYS - 1) * 1440);
 
@@ -110,37 +118,119 @@ pub fn simulate(timelines: &[Timeline], members: &[Member], sets: &ModelSets) ->
     let Some(first) = timelines.first() else {
         return Vec::new();
     };
-    let models = coupled_models(sets);
-    let cascade = Cascade::new(&sets.cascade);
-    let reading = sets.pacemaker.reading();
-    let melatonin = MelatoninMarkers {
-        onset_before_cbtmin_min: reading.dlmo_before_cbtmin_min,
-        duration_min: reading.melatonin_duration_min,
-    };
-    let units: Vec<WarmUnit> = members
-        .par_chunks(LANES)
-        .map(|unit| coupled::warm_up(&models, unit, &first.habits))
-        .collect();
+    let engine = Engine::new(sets);
+    let warm = engine.warm_up(members, &first.habits);
     timelines
         .par_iter()
-        .map(|timeline| {
-            let parts = units
-                .iter()
-                .map(|unit| simulate_unit(&models, &cascade, sets, unit, timeline))
-                .collect();
-            joined(parts, melatonin)
-        })
+        .map(|timeline| engine.live(&warm, timeline))
         .collect()
 }
 
+/// The models with the numbers of their sets, ready for any number of lines.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Engine {
+    coupled: CoupledModels,
+    cascade: Cascade,
+    reader: DayReader,
+    melatonin: MelatoninMarkers,
+}
+
+impl Engine {
+    /// The models of the sets, on the best instruction set of this machine.
+    pub fn new(sets: &ModelSets) -> Self {
+        Self::on(InstructionSet::best(), sets)
+    }
+
+    /// The same on an instruction set of one's choice; the results have the same bits on all.
+    pub fn on(instructions: InstructionSet, sets: &ModelSets) -> Self {
+        let reading = sets.pacemaker.reading();
+        Self {
+            coupled: coupled_models_on(instructions, sets),
+            cascade: Cascade::on(instructions, &sets.cascade),
+            reader: DayReader::new(
+                CORTISOL_STEP_MIN,
+                sets.cascade.quiescence.share_of_mean.value,
+            ),
+            melatonin: MelatoninMarkers {
+                onset_before_cbtmin_min: reading.dlmo_before_cbtmin_min,
+                duration_min: reading.melatonin_duration_min,
+            },
+        }
+    }
+
+    /// The same in steps of one minute throughout, for convergence tests.
+    pub fn in_minutes(sets: &ModelSets) -> Self {
+        let engine = Self::new(sets);
+        let share = sets.cascade.quiescence.share_of_mean.value;
+        Self {
+            coupled: CoupledModels {
+                pacemaker: engine.coupled.pacemaker.with_longest_step(1),
+                sleep: sleep::SleepModel::on_grid(&sets.sleep, 1),
+                ..engine.coupled
+            },
+            reader: DayReader::new(1, share),
+            ..engine
+        }
+    }
+
+    /// Lets the members live their habitual days, in units.
+    pub fn warm_up(&self, members: &[Member], habits: &Habits) -> Vec<WarmUnit> {
+        members
+            .par_chunks(LANES)
+            .map(|unit| coupled::warm_up(&self.coupled, unit, habits))
+            .collect()
+    }
+
+    /// Lets the units live one duty line.
+    pub fn live(&self, warm: &[WarmUnit], timeline: &Timeline) -> Simulation {
+        let parts = warm
+            .iter()
+            .map(|unit| self.live_unit(unit, timeline))
+            .collect();
+        joined(parts, self.melatonin)
+    }
+
+    /// Cortisol is read date by date and its rows are forgotten: memory does not grow with the roster.
+    fn live_unit(&self, unit: &WarmUnit, timeline: &Timeline) -> UnitPart {
+        let tracks = coupled::live(&self.coupled, unit, timeline);
+        let reader = &self.reader;
+        let mut run = self.cascade.begin(&tracks, SleepDebt::On, CASCADE_FROM);
+        let mut rows = Rows::new(CASCADE_FROM, reader.step_min());
+        run.advance(ENTRY + RUN_PAST_MIN, &mut rows);
+        let habitual = quiescent_references(&tracks, &rows, reader);
+        let mut samples = Vec::new();
+        let mut days = Vec::with_capacity(timeline.days.len());
+        for day in &timeline.days {
+            let to = timeline.end.min(day.end + RUN_PAST_MIN);
+            run.advance(to, &mut rows);
+            sample_to(to, tracks.len(), &rows, &mut samples);
+            let stretch = Stretch::date(day.start, day.end);
+            days.push(reader.read(&rows, tracks.len(), stretch).unwrap_or_default());
+            rows.forget_before(day.end + -KEPT_BEFORE_MIN);
+        }
+        run.advance(timeline.end, &mut rows);
+        sample_to(timeline.end, tracks.len(), &rows, &mut samples);
+        UnitPart {
+            tracks,
+            days,
+            habitual,
+            samples,
+        }
+    }
+}
+
 /// The coupled models with the numbers of the sets.
+pub fn coupled_models(sets: &ModelSets) -> CoupledModels {
+    coupled_models_on(InstructionSet::best(), sets)
+}
+
 #[expect(
     clippy::cast_possible_truncation,
     reason = "habitual days are a small whole number"
 )]
-pub fn coupled_models(sets: &ModelSets) -> CoupledModels {
+fn coupled_models_on(instructions: InstructionSet, sets: &ModelSets) -> CoupledModels {
     CoupledModels {
-        pacemaker: pacemaker::Pacemaker::new(&sets.pacemaker),
+        pacemaker: pacemaker::Pacemaker::on(instructions, &sets.pacemaker),
         sleep: sleep::SleepModel::new(&sets.sleep),
         light: light::LightScenes::new(&sets.light),
         habitual_days: sets.pacemaker.reading().habitual_days as i64,
@@ -156,75 +246,42 @@ struct UnitPart {
     samples: Vec<(Minute, Vec<f64>)>,
 }
 
-fn simulate_unit(
-    models: &CoupledModels,
-    cascade: &Cascade,
-    sets: &ModelSets,
-    unit: &WarmUnit,
-    timeline: &Timeline,
-) -> UnitPart {
-    let tracks = coupled::live(models, unit, timeline);
-    let mut state = cascade.start();
-    let span = (CASCADE_FROM, timeline.end);
-    let rows = cascade.run(&tracks, SleepDebt::On, span, &mut state);
-    let lanes: Vec<Vec<f64>> = (0..tracks.len())
-        .map(|lane| rows.iter().map(|row| row[lane]).collect())
-        .collect();
-    let share = sets.cascade.quiescence.share_of_mean.value;
-    let series = |values| CortisolSeries {
-        from: CASCADE_FROM,
-        values,
-    };
-    let days = timeline
-        .days
-        .iter()
-        .map(|day| {
-            lanes
-                .iter()
-                .filter_map(|values| {
-                    cortisol_day(series(values), Stretch::date(day.start, day.end), share)
-                })
-                .collect()
-        })
-        .collect();
-    let habitual = tracks
-        .iter()
-        .zip(&lanes)
-        .filter_map(|(track, values)| quiescent_reference(track, series(values), share))
-        .collect();
-    let samples = (0..timeline.end.0)
-        .step_by(usize::try_from(CURVE_STEP_MIN).unwrap_or(30))
-        .map(|minute| (Minute(minute), sample(&lanes, Minute(minute))))
-        .collect();
-    UnitPart {
-        tracks,
-        days,
-        habitual,
-        samples,
+/// Takes the points of the curve that lie before `to` and were not taken yet.
+fn sample_to(to: Minute, members: usize, rows: &Rows, samples: &mut Vec<(Minute, Vec<f64>)>) {
+    let mut next = samples
+        .last()
+        .map_or(Minute(0), |(at, _)| *at + CURVE_STEP_MIN);
+    while next < to {
+        if let Some(row) = rows.at(next) {
+            samples.push((next, row[..members].to_vec()));
+        }
+        next = next + CURVE_STEP_MIN;
     }
 }
 
-fn sample(lanes: &[Vec<f64>], minute: Minute) -> Vec<f64> {
-    let index = usize::try_from(minute - CASCADE_FROM).unwrap_or(0);
-    lanes.iter().map(|values| values[index]).collect()
-}
-
 /// The last habitual day, noon to noon, before the entry.
-fn quiescent_reference(
-    track: &MemberTrack,
-    series: CortisolSeries<'_>,
-    share: f64,
-) -> Option<QuiescentReference> {
-    let day = cortisol_day(series, Stretch::whole(ENTRY + -1440, ENTRY), share)?;
-    let (from, to) = day.quiescent;
-    let cbtmin = track.habitual_cbtmin_min;
-    let asleep: i64 = track.sleeps.iter().map(|s| s.inside(from, to)).sum();
-    Some(QuiescentReference {
-        from_min: from.as_f64() - cbtmin,
-        to_min: to.as_f64() - cbtmin,
-        awake_min: Minute(to - from - asleep).as_f64(),
-        day,
-    })
+fn quiescent_references(
+    tracks: &[MemberTrack],
+    rows: &Rows,
+    reader: &DayReader,
+) -> Vec<QuiescentReference> {
+    let stretch = Stretch::whole(ENTRY + -1440, ENTRY);
+    let days = reader.read(rows, tracks.len(), stretch).unwrap_or_default();
+    tracks
+        .iter()
+        .zip(days)
+        .map(|(track, day)| {
+            let (from, to) = day.quiescent;
+            let cbtmin = track.habitual_cbtmin_min;
+            let asleep: i64 = track.sleeps.iter().map(|s| s.inside(from, to)).sum();
+            QuiescentReference {
+                from_min: from.as_f64() - cbtmin,
+                to_min: to.as_f64() - cbtmin,
+                awake_min: Minute(to - from - asleep).as_f64(),
+                day,
+            }
+        })
+        .collect()
 }
 
 /// Puts the units of one timeline together, members in order.

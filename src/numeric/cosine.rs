@@ -51,6 +51,12 @@ pub fn fit_cosine(times: &[f64], values: &[f64], period: f64) -> Option<CosineFi
             normal[i][3] += left * value;
         }
     }
+    fit_from_normal(normal, period)
+}
+
+/// The same from the normal equations: rows and columns for 1, cos, sin; the last column holds the sums with the values.
+pub fn fit_from_normal(normal: [[f64; 4]; 3], period: f64) -> Option<CosineFit> {
+    let turn = 2.0 * std::f64::consts::PI / period;
     let [mesor, beta, gamma] = solve(normal)?;
     Some(CosineFit {
         mesor,

@@ -1,5 +1,10 @@
 //! Total serum cortisol from phase and sleep: what does the group-mean curve look like?
 //!
+//! ```text
+//! h   = x3^3 / (c^3 + x3^3)
+//! x1' = k0 D (1 - 0.5 h) - w1 x1;  x2' = k1 (1 - 0.5 h) x1 - w2 x2;  x3' = k2 x2 - w3 x3
+//! ```
+//!
 //! | symbol | meaning | unit |
 //! |---|---|---|
 //! | `x1` | CRH | pg/mL |
@@ -7,13 +12,24 @@
 //! | `x3` | total serum cortisol | nmol/L |
 //! | `D` | drive: circadian shape, sleep gate, waking pulse, sleep-debt term | 1 |
 //!
+//! Source: Vinther, Andersen and Ottesen 2011, J Math Biol 63:663 (equations from memory; they reproduce the published equilibrium), with a drive D in the place of its constant.
+//!
 //! A screening model of a group mean, not a predictor of one person's value.
 //! It has no slow memory and says nothing about recovery.
+#![expect(
+    clippy::inline_always,
+    reason = "the loop over lanes is compiled for several instruction sets; what it calls must be inlined"
+)]
+
+mod drive;
+mod run;
+
+pub use run::{CascadeRun, Rows};
 
 use super::pacemaker::LANES;
 use super::parameters::CascadeSet;
 use super::track::MemberTrack;
-use crate::numeric::lane;
+use crate::numeric::instruction_set::InstructionSet;
 use crate::numeric::periodic_table::PeriodicTable;
 use crate::units::Minute;
 
@@ -36,6 +52,7 @@ pub struct Cascade {
     pulse_phase_min: f64,
     debt: DebtNumbers,
     start: [f64; 3],
+    instructions: InstructionSet,
 }
 
 #[derive(Debug, Clone, PartialEq)]
@@ -57,17 +74,6 @@ struct DebtNumbers {
     to_min: f64,
 }
 
-/// State of the members of a unit.
-#[derive(Debug, Clone, PartialEq)]
-pub struct CascadeState {
-    /// CRH, pg/mL.
-    pub crh: [f64; LANES],
-    /// ACTH, pg/mL.
-    pub acth: [f64; LANES],
-    /// Total serum cortisol, nmol/L.
-    pub cortisol: [f64; LANES],
-}
-
 /// Does short sleep raise the evening drive?
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub enum SleepDebt {
@@ -78,12 +84,17 @@ pub enum SleepDebt {
 }
 
 impl Cascade {
-    /// The equations with the numbers of a parameter set.
+    /// The equations with the numbers of a parameter set, on the best instruction set of this machine.
+    pub fn new(set: &CascadeSet) -> Self {
+        Self::on(InstructionSet::best(), set)
+    }
+
+    /// The same on an instruction set of one's choice; the results have the same bits on all.
     #[expect(
         clippy::cast_possible_truncation,
         reason = "durations are small whole minutes"
     )]
-    pub fn new(set: &CascadeSet) -> Self {
+    pub fn on(instructions: InstructionSet, set: &CascadeSet) -> Self {
         let rates = &set.rates;
         let w3 = std::f64::consts::LN_2 / rates.half_life_cortisol.value;
         let constant = rates.feedback_cortisol.value;
@@ -121,25 +132,30 @@ impl Cascade {
                 set.start.acth.value,
                 set.start.cortisol.value,
             ],
+            instructions,
         }
     }
 
-    /// The state from which habitual days are lived.
-    pub fn start(&self) -> CascadeState {
-        CascadeState {
-            crh: [self.start[0]; LANES],
-            acth: [self.start[1]; LANES],
-            cortisol: [self.start[2]; LANES],
-        }
-    }
-
-    /// Cortisol of the tracks at each minute of [from, to], nmol/L, one row of lanes per minute.
+    /// Cortisol of the tracks from `from` on, ready to be advanced.
     ///
-    /// `state` is the state at `from` and afterwards the state at `to`.
+    /// # Panics
+    ///
+    /// Panics when more than [`LANES`] tracks are given; the caller cuts the ensemble into units.
+    pub fn begin<'a>(
+        &'a self,
+        tracks: &'a [MemberTrack],
+        debt: SleepDebt,
+        from: Minute,
+    ) -> CascadeRun<'a> {
+        assert!(tracks.len() <= LANES, "a unit holds at most 16 members");
+        CascadeRun::new(self, tracks, debt, from)
+    }
+
+    /// Rows of a whole stretch, one every `step_min` minutes from `from` to `to`.
     ///
     /// # Units
     ///
-    /// nmol/L of total serum cortisol; one value per minute, the first at `from`.
+    /// nmol/L of total serum cortisol.
     ///
     /// # Range
     ///
@@ -155,67 +171,29 @@ impl Cascade {
     /// let cascade = Cascade::new(&sets.cascade);
     /// // Five habitual nights 23-07 with CBTmin at 04:00, up to noon of the day before minute 0.
     /// let track = MemberTrack::habitual(Member::mean(&sets.ensemble, 30.0), -1200.0, 5);
-    /// let mut state = cascade.start();
-    /// let rows = cascade.run(&[track], SleepDebt::Off, (Minute(-6480), Minute(-720)), &mut state);
+    /// let rows = cascade.rows(&[track], SleepDebt::Off, (Minute(-6480), Minute(-720)), 2);
     /// // At 08:00 of the last morning the curve is near its peak of 428 nmol/L.
-    /// let eight = rows[usize::try_from(-960 + 6480).unwrap()][0];
+    /// let eight = rows.at(Minute(-960)).expect("inside the stretch")[0];
     /// assert!((eight - 427.4).abs() < 1.0);
     /// ```
     ///
     /// # Panics
     ///
-    /// Panics when more than [`LANES`] tracks are given; the caller cuts the ensemble into units.
-    pub fn run(
+    /// As [`Cascade::begin`].
+    pub fn rows(
         &self,
         tracks: &[MemberTrack],
         debt: SleepDebt,
         (from, to): (Minute, Minute),
-        state: &mut CascadeState,
-    ) -> Vec<[f64; LANES]> {
-        assert!(tracks.len() <= LANES, "a unit holds at most 16 members");
-        let mut drives: Vec<DriveReader<'_>> = tracks
-            .iter()
-            .map(|track| DriveReader::new(self, track, debt, from))
-            .collect();
-        let mut rows = vec![state.cortisol];
-        for minute in from.0..to.0 {
-            // Drive at the start, in the middle and at the end of the minute.
-            let mut at = [[0.0; 3]; LANES];
-            for (lane, reader) in at.iter_mut().zip(&mut drives) {
-                *lane = reader.minute(minute);
-            }
-            self.step(state, &at);
-            rows.push(state.cortisol);
-        }
+        step_min: i64,
+    ) -> Rows {
+        let mut rows = Rows::new(from, step_min);
+        self.begin(tracks, debt, from).advance(to, &mut rows);
         rows
     }
 
-    /// One minute of classical Runge-Kutta; the drive at the end of the step is its left limit.
-    ///
-    /// # Equation
-    ///
-    /// ```text
-    /// h   = x3^3 / (c^3 + x3^3)
-    /// x1' = k0 D (1 - 0.5 h) - w1 x1;  x2' = k1 (1 - 0.5 h) x1 - w2 x2;  x3' = k2 x2 - w3 x3
-    /// ```
-    ///
-    /// # Source
-    ///
-    /// Vinther, Andersen and Ottesen 2011, J Math Biol 63:663 (equations from memory; they reproduce the published equilibrium), with a drive D in the place of its constant.
-    pub fn step(&self, state: &mut CascadeState, drive: &[[f64; 3]; LANES]) {
-        for (i, [start, middle, end]) in drive.iter().enumerate() {
-            let x = [state.crh[i], state.acth[i], state.cortisol[i]];
-            let a = self.rate(x, *start);
-            let b = self.rate(moved(x, a, 0.5), *middle);
-            let c = self.rate(moved(x, b, 0.5), *middle);
-            let d = self.rate(moved(x, c, 1.0), *end);
-            state.crh[i] = x[0] + (a[0] + 2.0 * b[0] + 2.0 * c[0] + d[0]) / 6.0;
-            state.acth[i] = x[1] + (a[1] + 2.0 * b[1] + 2.0 * c[1] + d[1]) / 6.0;
-            state.cortisol[i] = x[2] + (a[2] + 2.0 * b[2] + 2.0 * c[2] + d[2]) / 6.0;
-        }
-    }
-
-    #[inline]
+    /// Right-hand side of the equations, per minute.
+    #[inline(always)]
     fn rate(&self, [crh, acth, cortisol]: [f64; 3], drive: f64) -> [f64; 3] {
         let cubed = cortisol * cortisol * cortisol;
         let feedback = cubed / (self.cubed_constant + cubed);
@@ -255,15 +233,6 @@ impl Cascade {
     }
 }
 
-#[inline]
-fn moved(x: [f64; 3], rate: [f64; 3], minutes: f64) -> [f64; 3] {
-    [
-        x[0] + minutes * rate[0],
-        x[1] + minutes * rate[1],
-        x[2] + minutes * rate[2],
-    ]
-}
-
 /// Circadian shape of the drive over minutes since `CBTmin`, already scaled.
 fn circadian_shape(set: &CascadeSet) -> PeriodicTable {
     let drive = &set.drive;
@@ -277,127 +246,4 @@ fn circadian_shape(set: &CascadeSet) -> PeriodicTable {
         let fall = hill(1440.0 - s, drive.fall_at.value, drive.fall_power.value);
         drive.scale.value * (rise * fall + drive.floor.value)
     })
-}
-
-/// Reads the drive of one member minute by minute.
-#[derive(Debug)]
-struct DriveReader<'a> {
-    cascade: &'a Cascade,
-    track: &'a MemberTrack,
-    /// Index of the first sleep that has not ended.
-    sleep: usize,
-    /// Gate weight of that sleep.
-    weight: f64,
-    /// Pulse of the last waking and the minute at which it ends.
-    pulse: (f64, i64),
-    /// Debt multiplier by cycle.
-    debt: Vec<f64>,
-}
-
-impl<'a> DriveReader<'a> {
-    fn new(cascade: &'a Cascade, track: &'a MemberTrack, debt: SleepDebt, from: Minute) -> Self {
-        let sleep = track.sleeps.partition_point(|s| s.to <= from);
-        let mut reader = Self {
-            cascade,
-            track,
-            sleep,
-            weight: 0.0,
-            pulse: (0.0, i64::MIN),
-            debt: debt_by_cycle(cascade, track, debt),
-        };
-        reader.weigh();
-        if let Some(last) = sleep.checked_sub(1) {
-            reader.wake(track.sleeps[last].to);
-        }
-        reader
-    }
-
-    fn weigh(&mut self) {
-        if let Some(sleep) = self.track.sleeps.get(self.sleep) {
-            let phase = self.track.phase_min(sleep.from.as_f64());
-            self.weight = self.cascade.gate_weight(phase);
-        }
-    }
-
-    fn wake(&mut self, at: Minute) {
-        let size = self.cascade.pulse_at(self.track.phase_min(at.as_f64()));
-        self.pulse = (size, at.0 + self.cascade.pulse_min);
-    }
-
-    /// Drive at the start, in the middle and at the end of a minute.
-    fn minute(&mut self, minute: i64) -> [f64; 3] {
-        while let Some(sleep) = self.track.sleeps.get(self.sleep) {
-            if sleep.to.0 > minute {
-                break;
-            }
-            let (woke, cut) = (sleep.to, sleep.cut);
-            self.sleep += 1;
-            self.weigh();
-            if !cut {
-                self.wake(woke);
-            }
-        }
-        let onset = self
-            .track
-            .sleeps
-            .get(self.sleep)
-            .map(|sleep| sleep.from.0)
-            .filter(|onset| *onset <= minute);
-        let pulse = if minute < self.pulse.1 {
-            self.pulse.0
-        } else {
-            0.0
-        };
-        let start = Minute(minute).as_f64();
-        [0.0, 0.5, 1.0].map(|part| self.at(start + part, onset, pulse))
-    }
-
-    fn at(&self, minute: f64, onset: Option<i64>, pulse: f64) -> f64 {
-        let phase = self.track.phase_min(minute);
-        let circadian = self.cascade.shape.at(phase);
-        let gate = onset.map_or(1.0, |onset| self.gate(minute - Minute(onset).as_f64()));
-        (circadian * gate + pulse) * self.debt_factor(minute, phase)
-    }
-
-    fn gate(&self, since_onset_min: f64) -> f64 {
-        let gate = &self.cascade.gate;
-        let late = (since_onset_min - Minute(gate.full_min).as_f64()).max(0.0);
-        1.0 - gate.strength * self.weight * lane::exp(-late / gate.release_min)
-    }
-
-    fn debt_factor(&self, minute: f64, phase: f64) -> f64 {
-        let debt = &self.cascade.debt;
-        if self.debt.is_empty() || !(debt.from_min..debt.to_min).contains(&phase) {
-            return 1.0;
-        }
-        let cycle = self
-            .track
-            .cbtmin_min
-            .partition_point(|cbtmin| *cbtmin <= minute)
-            .max(1)
-            - 1;
-        1.0 + self.debt[cycle]
-    }
-}
-
-/// `q(L)` of each cycle; L = sleep need minus sleep in the 24 h that end 13 h after `CBTmin`. Empty when the term is off.
-fn debt_by_cycle(cascade: &Cascade, track: &MemberTrack, debt: SleepDebt) -> Vec<f64> {
-    if debt == SleepDebt::Off {
-        return Vec::new();
-    }
-    let numbers = &cascade.debt;
-    track
-        .cbtmin_min
-        .iter()
-        .map(|cbtmin| {
-            let end = Minute::nearest(cbtmin + numbers.from_min);
-            let known = track.sleeps.first().is_some_and(|s| s.from <= end + -1440);
-            if !known {
-                return 0.0;
-            }
-            let slept = track.sleep_h(end + -1440, end);
-            let lost = (track.member.need_h - slept).max(0.0);
-            numbers.saturation * (1.0 - libm::exp(-lost / numbers.scale_h))
-        })
-        .collect()
 }

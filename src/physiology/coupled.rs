@@ -1,14 +1,14 @@
-//! Sleep, light and pacemaker in one minute loop: who sleeps when, and where does the clock stand?
+//! Sleep, light and pacemaker together: who sleeps when, and where does the clock stand?
 //!
-//! The members of a unit are the lanes. Each minute the scalar part of a member decides on sleep and light,
-//! then all lanes take one integration step together.
+//! Each member of a unit lives its own life; the clocks of all move on together ([`super::unit`]).
 
 use super::ensemble::Member;
 use super::light::LightScenes;
-use super::pacemaker::{LANES, MarkerReader, Pacemaker, PacemakerInput, PacemakerState};
-use super::sleep::{SleepModel, Sleeper, Surroundings, Transition};
+use super::pacemaker::{Pacemaker, PacemakerState};
+use super::sleep::{SleepModel, Sleeper, Surroundings};
 use super::track::{MemberTrack, SleepEpisode};
-use crate::timeline::plan::{Segment, segments};
+use super::unit::{Clocks, Life, Marker, Scene};
+use crate::timeline::plan::{Place, Segment, segments};
 use crate::timeline::{Habits, Timeline};
 use crate::units::Minute;
 
@@ -36,8 +36,10 @@ pub struct CoupledModels {
 pub struct WarmUnit {
     members: Vec<Member>,
     state: PacemakerState,
-    /// Last `CBTmin` before the entry, minutes since the epoch, per member.
-    cbtmin_min: Vec<f64>,
+    /// Last `CBTmin` before the entry and radius of the oscillation there, per member.
+    markers: Vec<Marker>,
+    /// How much later than the day before the last `CBTmin` fell, minutes, per member.
+    drift_min: Vec<f64>,
 }
 
 impl WarmUnit {
@@ -51,9 +53,14 @@ impl WarmUnit {
         &self.state
     }
 
-    /// Last `CBTmin` before the entry, minutes since the epoch.
-    pub fn cbtmin_min(&self) -> &[f64] {
-        &self.cbtmin_min
+    /// Last `CBTmin` before the entry, minutes since the epoch, and radius there, per member.
+    pub fn markers(&self) -> &[Marker] {
+        &self.markers
+    }
+
+    /// How much later than on the day before the last `CBTmin` fell, minutes: near 0 when entrained.
+    pub fn drift_min(&self) -> &[f64] {
+        &self.drift_min
     }
 }
 
@@ -61,93 +68,92 @@ impl WarmUnit {
 ///
 /// # Panics
 ///
-/// Panics when more than [`LANES`] or no members are given; the caller cuts the ensemble into units.
+/// Panics when more than 16 or no members are given; the caller cuts the ensemble into units.
 pub fn warm_up(models: &CoupledModels, members: &[Member], habits: &Habits) -> WarmUnit {
-    assert!(
-        (1..=LANES).contains(&members.len()),
-        "a unit holds 1 to 16 members"
-    );
-    let lane_members = lanes_of(members);
-    let pacemaker = &models.pacemaker;
-    let pace = lane_members.map(|m| pacemaker.pace(m.tau_h));
-    let mut state = pacemaker.start();
-    let mut readers: [MarkerReader; LANES] = std::array::from_fn(|_| MarkerReader::new());
-    let mut last_cbtmin = [0.0; LANES];
-    let mut drive = LightDrive::dark();
     let minutes = models.habitual_days * DAY_MIN + DAY_MIN / 2;
-    for minute in 0..minutes {
-        let daylight = is_daylight(habits, minute);
-        for (lane, member) in lane_members.iter().enumerate() {
-            let asleep = sleeps_by_habit(member, minute);
-            let lux = if asleep {
-                models.light.asleep()
-            } else {
-                models.light.home(daylight)
-            };
-            drive.set(pacemaker, lane, lux * member.sensitivity, asleep);
-        }
-        let before = state.clone();
-        pacemaker.step(&mut state, &drive.input, &pace);
-        for lane in 0..LANES {
-            let from = (before.first[lane], before.second[lane]);
-            let to = (state.first[lane], state.second[lane]);
-            let at = Minute(minute).as_f64();
-            if let Some(cbtmin) = readers[lane].read(pacemaker, at, from, to) {
-                last_cbtmin[lane] = cbtmin;
-            }
-        }
-    }
-    let entry = Minute(minutes).as_f64() - ENTRY.as_f64();
+    let entry = ENTRY.0 - minutes;
+    let mut lives: Vec<HabitualLife> = members
+        .iter()
+        .map(|member| HabitualLife::of(models, member, habits))
+        .collect();
+    let mut clocks = Clocks::new(&models.pacemaker, members, models.pacemaker.start());
+    // The epoch of the habitual days is a midnight, as that of the roster.
+    clocks.live_through(&mut lives, entry, ENTRY.0);
     WarmUnit {
         members: members.to_vec(),
-        state,
-        cbtmin_min: last_cbtmin[..members.len()]
+        state: clocks.state,
+        markers: lives.iter().map(|life| life.last).collect(),
+        drift_min: lives
             .iter()
-            .map(|cbtmin| cbtmin - entry)
+            .map(|life| life.last.cbtmin_min - life.before_last_min - 1440.0)
             .collect(),
     }
 }
 
-/// Fills the lanes of a unit; spare lanes repeat the last member and are dropped afterwards.
-fn lanes_of(members: &[Member]) -> [Member; LANES] {
-    std::array::from_fn(|lane| members[lane.min(members.len() - 1)])
+/// A habitual day off, every day the same.
+#[derive(Debug)]
+struct HabitualLife {
+    sensitivity: f64,
+    asleep_lux: f64,
+    day_lux: f64,
+    evening_lux: f64,
+    /// Minutes of the day.
+    bed: i64,
+    sleep_min: i64,
+    daylight: (i64, i64),
+    last: Marker,
+    before_last_min: f64,
 }
 
-fn is_daylight(habits: &Habits, minute: i64) -> bool {
-    let clock_h = crate::units::minutes_to_hours(minute.rem_euclid(DAY_MIN));
-    (habits.sunrise_h..habits.sunset_h).contains(&clock_h)
-}
-
-fn sleeps_by_habit(member: &Member, minute: i64) -> bool {
-    let since_bed = Minute(minute).as_f64() - member.bed_h * 60.0;
-    let phase = since_bed - 1440.0 * (since_bed / 1440.0 + 1e-9).floor();
-    phase < member.need_h * 60.0 - 1e-6
-}
-
-/// Light and arousal of the lanes; the power of the light is taken only when it changes.
-#[derive(Debug, Clone)]
-struct LightDrive {
-    input: PacemakerInput,
-    lux: [f64; LANES],
-}
-
-impl LightDrive {
-    fn dark() -> Self {
+impl HabitualLife {
+    fn of(models: &CoupledModels, member: &Member, habits: &Habits) -> Self {
+        let minute = |hour: f64| models.sleep.on_or_after(hour * 60.0);
+        let bed = minute(member.bed_h);
         Self {
-            input: PacemakerInput {
-                alpha: [0.0; LANES],
-                arousal: [0.0; LANES],
+            sensitivity: member.sensitivity,
+            asleep_lux: models.light.asleep(),
+            day_lux: models.light.home(true),
+            evening_lux: models.light.home(false),
+            bed,
+            sleep_min: minute(member.bed_h + member.need_h) - bed,
+            daylight: (minute(habits.sunrise_h), minute(habits.sunset_h)),
+            last: Marker {
+                cbtmin_min: 0.0,
+                radius: 1.0,
             },
-            lux: [0.0; LANES],
+            before_last_min: 0.0,
+        }
+    }
+}
+
+impl Life for HabitualLife {
+    fn scene(&mut self, minute: i64) -> Scene {
+        let of_day = minute.rem_euclid(DAY_MIN);
+        let asleep = (minute - self.bed).rem_euclid(DAY_MIN) < self.sleep_min;
+        let lux = if asleep {
+            self.asleep_lux
+        } else if (self.daylight.0..self.daylight.1).contains(&of_day) {
+            self.day_lux
+        } else {
+            self.evening_lux
+        };
+        let wait = [
+            self.bed,
+            self.bed + self.sleep_min,
+            self.daylight.0,
+            self.daylight.1,
+        ]
+        .map(|edge| (edge - minute - 1).rem_euclid(DAY_MIN) + 1);
+        Scene {
+            lux: lux * self.sensitivity,
+            asleep,
+            until: minute + wait.into_iter().min().unwrap_or(DAY_MIN),
         }
     }
 
-    fn set(&mut self, pacemaker: &Pacemaker, lane: usize, lux: f64, asleep: bool) {
-        if self.lux[lane].to_bits() != lux.to_bits() {
-            self.lux[lane] = lux;
-            self.input.alpha[lane] = pacemaker.alpha(lux);
-        }
-        self.input.arousal[lane] = pacemaker.arousal(asleep);
+    fn meet(&mut self, marker: Marker) {
+        self.before_last_min = self.last.cbtmin_min;
+        self.last = marker;
     }
 }
 
@@ -170,67 +176,57 @@ impl LightDrive {
 /// assert!((track.habitual_cbtmin_min / 60.0 + 24.0 - 3.5326).abs() < 0.01);
 /// ```
 pub fn live(models: &CoupledModels, warm: &WarmUnit, timeline: &Timeline) -> Vec<MemberTrack> {
-    let lane_members = lanes_of(&warm.members);
-    let pace = lane_members.map(|m| models.pacemaker.pace(m.tau_h));
-    let mut people: Vec<Person> = warm
+    let mut people: Vec<Person<'_>> = warm
         .members
         .iter()
-        .zip(&warm.cbtmin_min)
-        .map(|(member, cbtmin)| Person::enter(models, member, *cbtmin, timeline))
+        .zip(&warm.markers)
+        .map(|(member, marker)| Person::enter(models, timeline, member, *marker))
         .collect();
-    let mut state = warm.state.clone();
-    let mut drive = LightDrive::dark();
-    for minute in ENTRY.0..timeline.end.0 {
-        let clock_min = timeline.clock.at(Minute(minute));
-        for (lane, person) in people.iter_mut().enumerate() {
-            person.decide(models, minute, clock_min);
-            let lux = person.lux(models, timeline) * person.member.sensitivity;
-            drive.set(&models.pacemaker, lane, lux, person.sleeper.asleep());
-        }
-        let before = state.clone();
-        models.pacemaker.step(&mut state, &drive.input, &pace);
-        for (lane, person) in people.iter_mut().enumerate() {
-            person.sleeper.live_a_minute(&models.sleep);
-            let from = (before.first[lane], before.second[lane]);
-            let to = (state.first[lane], state.second[lane]);
-            person.read_marker(&models.pacemaker, minute, from, to);
-        }
-    }
+    let cbtmin_min: Vec<f64> = warm.markers.iter().map(|m| m.cbtmin_min).collect();
+    let mut clocks =
+        Clocks::new(&models.pacemaker, &warm.members, warm.state.clone()).after(&cbtmin_min);
+    clocks.live_through(&mut people, ENTRY.0, timeline.end.0);
     people
         .into_iter()
         .map(|person| person.leave(timeline.end))
         .collect()
 }
 
-/// The scalar part of one member.
+/// One member on the roster.
 #[derive(Debug)]
-struct Person {
+struct Person<'a> {
+    models: &'a CoupledModels,
+    timeline: &'a Timeline,
     member: Member,
     sleeper: Sleeper,
     segments: Vec<Segment>,
     here: usize,
-    reader: MarkerReader,
-    habitual_cbtmin_min: f64,
+    /// The minute at which the person falls asleep or wakes, if it does in this segment.
+    planned: Option<i64>,
+    habitual: Marker,
     cbtmin_min: f64,
     track: MemberTrack,
 }
 
-impl Person {
+impl<'a> Person<'a> {
     fn enter(
-        models: &CoupledModels,
+        models: &'a CoupledModels,
+        timeline: &'a Timeline,
         member: &Member,
-        cbtmin_min: f64,
-        timeline: &Timeline,
+        habitual: Marker,
     ) -> Self {
+        let on_grid = |minute| Minute(models.sleep.on_or_after(minute));
         Self {
+            models,
+            timeline,
             member: *member,
             sleeper: Sleeper::habitual(&models.sleep, member, ENTRY.0),
-            segments: segments(timeline, member.commute_min, ENTRY),
+            segments: segments(timeline, member.commute_min, ENTRY, on_grid),
             here: 0,
-            reader: MarkerReader::after(&models.pacemaker, cbtmin_min),
-            habitual_cbtmin_min: cbtmin_min,
-            cbtmin_min,
-            track: MemberTrack::habitual(*member, cbtmin_min, REMEMBERED_DAYS),
+            planned: None,
+            habitual,
+            cbtmin_min: habitual.cbtmin_min,
+            track: MemberTrack::habitual(*member, habitual.cbtmin_min, REMEMBERED_DAYS),
         }
     }
 
@@ -238,26 +234,34 @@ impl Person {
         &self.segments[self.here]
     }
 
-    fn decide(&mut self, models: &CoupledModels, minute: i64, clock_min: i64) {
-        while self.segments[self.here].to.0 <= minute && self.here + 1 < self.segments.len() {
-            self.here += 1;
+    fn surroundings(&self) -> Surroundings {
+        let segment = self.segment();
+        Surroundings {
+            sleep_possible: segment.sleep_possible,
+            alarm: segment.alarm.map(|alarm| alarm.0),
+            until: segment.to.0,
+            clock_shift_min: self.timeline.clock.at(segment.from) - segment.from.0,
         }
-        let around = Surroundings {
-            minute,
-            clock_min,
-            sleep_possible: self.segment().sleep_possible,
-            alarm: self.segment().alarm.map(|alarm| alarm.0),
-        };
-        let displacement = self.cbtmin_min - self.habitual_cbtmin_min;
-        match self.sleeper.decide(&models.sleep, around, displacement) {
-            Some(Transition::FellAsleep) => self.track.sleeps.push(SleepEpisode {
+    }
+
+    /// Falls asleep or wakes at `minute`, if that is planned or the alarm rings.
+    fn turn(&mut self, minute: i64, around: &Surroundings) -> bool {
+        let rung = self.sleeper.asleep() && !around.sleep_possible;
+        if !rung && self.planned != Some(minute) {
+            return false;
+        }
+        if self.sleeper.asleep() {
+            self.end_sleep(minute, false);
+        } else {
+            self.track.sleeps.push(SleepEpisode {
                 from: Minute(minute),
                 to: Minute(minute),
                 cut: true,
-            }),
-            Some(Transition::Woke) => self.end_sleep(minute, false),
-            None => {}
+            });
         }
+        self.sleeper
+            .turn(&self.models.sleep, minute, around.clock_shift_min);
+        true
     }
 
     fn end_sleep(&mut self, minute: i64, cut: bool) {
@@ -267,34 +271,21 @@ impl Person {
         }
     }
 
-    fn lux(&self, models: &CoupledModels, timeline: &Timeline) -> f64 {
+    fn lux(&self) -> f64 {
+        let light = &self.models.light;
         if self.sleeper.asleep() {
-            return models.light.asleep();
+            return light.asleep();
         }
         let segment = self.segment();
-        let lux = models.light.awake(segment, timeline);
+        let lux = light.awake(segment, self.timeline);
         let on_the_way_home = segment
             .after_night_duty
             .is_some_and(|end| self.sleeper.last_wake() < end.0);
-        let at_work = matches!(segment.place, crate::timeline::plan::Place::Duty(_));
+        let at_work = matches!(segment.place, Place::Duty(_));
         if on_the_way_home && !at_work && !self.member.sees_morning_daylight {
-            lux.min(models.light.morning_kept_out())
+            lux.min(light.morning_kept_out())
         } else {
             lux
-        }
-    }
-
-    fn read_marker(
-        &mut self,
-        pacemaker: &Pacemaker,
-        minute: i64,
-        from: (f64, f64),
-        to: (f64, f64),
-    ) {
-        let at = Minute(minute).as_f64();
-        if let Some(cbtmin) = self.reader.read(pacemaker, at, from, to) {
-            self.cbtmin_min = cbtmin;
-            self.track.cbtmin_min.push(cbtmin);
         }
     }
 
@@ -303,5 +294,35 @@ impl Person {
             self.end_sleep(end.0, true);
         }
         self.track
+    }
+}
+
+impl Life for Person<'_> {
+    fn scene(&mut self, minute: i64) -> Scene {
+        while self.segments[self.here].to.0 <= minute && self.here + 1 < self.segments.len() {
+            self.here += 1;
+        }
+        let around = self.surroundings();
+        let turned = self.turn(minute, &around);
+        // One change of state at a minute; the next is looked for from the next one.
+        let from = minute + i64::from(turned);
+        let from = self.models.sleep.on_or_after(Minute(from).as_f64()).max(from);
+        let displacement_min = self.cbtmin_min - self.habitual.cbtmin_min;
+        self.planned =
+            self.sleeper
+                .next_change(&self.models.sleep, from, &around, displacement_min);
+        Scene {
+            lux: self.lux() * self.member.sensitivity,
+            asleep: self.sleeper.asleep(),
+            until: self.planned.unwrap_or(around.until),
+        }
+    }
+
+    fn meet(&mut self, marker: Marker) {
+        self.cbtmin_min = marker.cbtmin_min;
+        self.track.cbtmin_min.push(marker.cbtmin_min);
+        self.track
+            .amplitude_ratio
+            .push(marker.radius / self.habitual.radius);
     }
 }

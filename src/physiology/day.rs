@@ -1,6 +1,13 @@
-//! Cortisol of one member over one local date.
+//! Cortisol of the members over one local date.
+#![expect(
+    clippy::inline_always,
+    reason = "loops over lanes are compiled for several instruction sets; what they call must be inlined"
+)]
 
-use crate::numeric::cosine::fit_cosine;
+use super::cascade::Rows;
+use super::pacemaker::LANES;
+use crate::numeric::cosine::{CosineFit, fit_from_normal};
+use crate::numeric::instruction_set::{InstructionSet, Work};
 use crate::units::Minute;
 
 /// Features of the modelled total serum cortisol of one stretch of time.
@@ -24,15 +31,6 @@ pub struct CortisolDay {
     pub nadir_at: Minute,
     /// Unbroken interval around the nadir below the share of the mean: first minute below, first minute above.
     pub quiescent: (Minute, Minute),
-}
-
-/// One lane of a run, minute by minute.
-#[derive(Debug, Clone, Copy)]
-pub struct CortisolSeries<'a> {
-    /// Minute of the first value.
-    pub from: Minute,
-    /// Values, nmol/L.
-    pub values: &'a [f64],
 }
 
 /// Where features are looked for, first minute and first minute after.
@@ -62,85 +60,233 @@ impl Stretch {
     }
 }
 
-/// Features of a stretch: mean, 24-h cosine, peak, nadir and the quiescent interval around it.
-///
-/// # Units
-///
-/// nmol/L and minutes; `share_of_mean` without unit.
-///
-/// # Example
-///
-/// ```
-/// use acroshift::physiology::day::{cortisol_day, CortisolSeries, Stretch};
-/// use acroshift::units::Minute;
-/// let values: Vec<f64> = (0..2880)
-///     .map(|minute| 200.0 - 150.0 * (f64::from(minute) * std::f64::consts::TAU / 1440.0).cos())
-///     .collect();
-/// let series = CortisolSeries { from: Minute(0), values: &values };
-/// let day = cortisol_day(series, Stretch::whole(Minute(720), Minute(2160)), 0.6).expect("the stretch lies inside");
-/// assert_eq!((day.nadir_at, day.peak_at), (Minute(1440), Minute(720)));
-/// assert!((day.mean - 200.0).abs() < 1e-9);
-/// ```
-///
-///
-/// The quiescent interval may reach beyond the stretch on either side.
-/// Returns `None` when the stretch does not lie inside the series.
-///
-/// # Source
-///
-/// Quiescence: own definition after the idea of Griefahn 2006, below 60 % of the mean.
-pub fn cortisol_day(
-    series: CortisolSeries<'_>,
-    stretch: Stretch,
+/// Reads the features of stretches of time from the rows of a run.
+#[derive(Debug, Clone, PartialEq)]
+pub struct DayReader {
+    step_min: i64,
     share_of_mean: f64,
-) -> Option<CortisolDay> {
-    let (from, to) = stretch.day;
-    let first = usize::try_from(from - series.from).ok()?;
-    let last = usize::try_from(to - series.from).ok()?;
-    let values = series.values.get(first..last)?;
-    let hours: Vec<f64> = (0..values.len()).map(minute_as_hours).collect();
-    let fit = fit_cosine(&hours, values, 24.0)?;
-    let mean = values.iter().sum::<f64>() / Minute(signed(values.len())).as_f64();
-    let (peak_index, peak) = extreme(values, |a, b| a > b)?;
-    let evening = usize::try_from(stretch.night.0 - series.from).ok()?;
-    let morning = usize::try_from(stretch.night.1 - series.from).ok()?;
-    let night = series.values.get(evening..morning)?;
-    let (nadir_index, nadir) = extreme(night, |a, b| a < b)?;
-    let threshold = share_of_mean * mean;
-    let (mut begins, mut ends) = (evening + nadir_index, evening + nadir_index);
-    while begins > 0 && series.values[begins - 1] < threshold {
-        begins -= 1;
-    }
-    while ends < series.values.len() && series.values[ends] < threshold {
-        ends += 1;
-    }
-    Some(CortisolDay {
-        mean,
-        mesor: fit.mesor,
-        amplitude: fit.amplitude,
-        acrophase_min: fit.acrophase * 60.0,
-        peak,
-        peak_at: from + signed(peak_index),
-        nadir,
-        nadir_at: series.from + signed(evening + nadir_index),
-        quiescent: (series.from + signed(begins), series.from + signed(ends)),
-    })
+    /// Cosine and sine of the 24-h turn, row by row from the start of a stretch.
+    waves: Vec<[f64; 2]>,
+    instructions: InstructionSet,
 }
 
-fn extreme(values: &[f64], better: impl Fn(f64, f64) -> bool) -> Option<(usize, f64)> {
-    let mut best = (0, *values.first()?);
-    for (index, &value) in values.iter().enumerate() {
-        if better(value, best.1) {
-            best = (index, value);
+/// Longest stretch, minutes: a local date over a clock change, and room for more.
+const LONGEST_MIN: i64 = 2 * 1440;
+
+impl DayReader {
+    /// A reader of rows that stand `step_min` apart; quiescence lies below `share_of_mean` of the mean.
+    pub fn new(step_min: i64, share_of_mean: f64) -> Self {
+        let waves = (0..=LONGEST_MIN / step_min)
+            .map(|row| {
+                let turn = 2.0 * std::f64::consts::PI * Minute(row * step_min).as_f64() / 1440.0;
+                [libm::cos(turn), libm::sin(turn)]
+            })
+            .collect();
+        Self {
+            step_min,
+            share_of_mean,
+            waves,
+            instructions: InstructionSet::best(),
         }
     }
-    Some(best)
+
+    /// Features of a stretch for the first `members` lanes: mean, 24-h cosine, peak, nadir and the quiescent interval around it.
+    ///
+    /// The quiescent interval may reach beyond the stretch on either side, as far as rows are held.
+    /// Returns `None` when the rows do not hold the stretch or it is longer than two days.
+    ///
+    /// # Units
+    ///
+    /// nmol/L and minutes; `share_of_mean` without unit.
+    ///
+    /// # Source
+    ///
+    /// Quiescence: own definition after the idea of Griefahn 2006, below 60 % of the mean.
+    ///
+    /// # Example
+    ///
+    /// ```
+    /// use acroshift::physiology::cascade::{Cascade, SleepDebt};
+    /// use acroshift::physiology::day::{DayReader, Stretch};
+    /// use acroshift::physiology::{Member, MemberTrack, ModelSets};
+    /// use acroshift::units::Minute;
+    /// let sets = ModelSets::embedded();
+    /// let cascade = Cascade::new(&sets.cascade);
+    /// let track = MemberTrack::habitual(Member::mean(&sets.ensemble, 30.0), -1200.0, 5);
+    /// let rows = cascade.rows(&[track], SleepDebt::Off, (Minute(-6480), Minute(-720)), 2);
+    /// let noon_to_noon = Stretch::whole(Minute(-2160), Minute(-720));
+    /// let days = DayReader::new(2, 0.6).read(&rows, 1, noon_to_noon).expect("the rows hold the day");
+    /// assert!((days[0].mean - 210.6).abs() < 1.0);
+    /// ```
+    pub fn read(&self, rows: &Rows, members: usize, stretch: Stretch) -> Option<Vec<CortisolDay>> {
+        let index = |minute| rows.index(minute);
+        let day = index(stretch.day.0)?..index(stretch.day.1)?;
+        let night = index(stretch.night.0)?..index(stretch.night.1)?;
+        let held = rows.held();
+        let (day_rows, night_rows) = (held.get(day.clone())?, held.get(night.clone())?);
+        let waves = self.waves.get(..day_rows.len())?;
+        let Read { sums, peak, nadir } = self.instructions.run(Reading {
+            day: day_rows,
+            night: night_rows,
+            waves,
+        });
+        (0..members)
+            .map(|lane| {
+                let fit = sums.fit(lane)?;
+                let mean = sums.value[lane] / sums.rows;
+                let nadir_row = night.start + nadir.row(lane);
+                let threshold = self.share_of_mean * mean;
+                let quiescent = below(held, lane, nadir_row, threshold);
+                Some(CortisolDay {
+                    mean,
+                    mesor: fit.mesor,
+                    amplitude: fit.amplitude,
+                    acrophase_min: fit.acrophase,
+                    peak: peak.value[lane],
+                    peak_at: rows.minute(day.start + peak.row(lane)),
+                    nadir: -nadir.value[lane],
+                    nadir_at: rows.minute(nadir_row),
+                    quiescent: (rows.minute(quiescent.start), rows.minute(quiescent.end)),
+                })
+            })
+            .collect()
+    }
+
+    /// Minutes between the rows that are read.
+    pub fn step_min(&self) -> i64 {
+        self.step_min
+    }
 }
 
-fn minute_as_hours(index: usize) -> f64 {
-    Minute(signed(index)).as_f64() / 60.0
+/// Rows to be read.
+struct Reading<'a> {
+    day: &'a [[f64; LANES]],
+    night: &'a [[f64; LANES]],
+    waves: &'a [[f64; 2]],
 }
 
-fn signed(index: usize) -> i64 {
-    i64::try_from(index).unwrap_or(i64::MAX)
+/// What was read from them.
+struct Read {
+    sums: Sums,
+    peak: Extreme,
+    nadir: Extreme,
+}
+
+impl Work for Reading<'_> {
+    type Result = Read;
+
+    #[inline(always)]
+    fn done(self) -> Read {
+        Read {
+            sums: Sums::of(self.day, self.waves),
+            peak: extreme(self.day, 1.0),
+            nadir: extreme(self.night, -1.0),
+        }
+    }
+}
+
+/// Sums of the normal equations of the 24-h cosine, by lane where the values take part.
+struct Sums {
+    rows: f64,
+    design: [[f64; 2]; 3],
+    wave: [f64; 2],
+    value: [f64; LANES],
+    cosine: [f64; LANES],
+    sine: [f64; LANES],
+}
+
+impl Sums {
+    #[inline(always)]
+    fn of(rows: &[[f64; LANES]], waves: &[[f64; 2]]) -> Self {
+        let mut sums = Self {
+            rows: 0.0,
+            design: [[0.0; 2]; 3],
+            wave: [0.0; 2],
+            value: [0.0; LANES],
+            cosine: [0.0; LANES],
+            sine: [0.0; LANES],
+        };
+        let (mut value, mut cosine, mut sine) = ([0.0; LANES], [0.0; LANES], [0.0; LANES]);
+        for (row, [cos, sin]) in rows.iter().zip(waves) {
+            sums.rows += 1.0;
+            sums.wave[0] += cos;
+            sums.wave[1] += sin;
+            sums.design[0][0] += cos * cos;
+            sums.design[0][1] += cos * sin;
+            sums.design[1][1] += sin * sin;
+            for lane in 0..LANES {
+                value[lane] += row[lane];
+                cosine[lane] += row[lane] * cos;
+                sine[lane] += row[lane] * sin;
+            }
+        }
+        sums.value = value;
+        sums.cosine = cosine;
+        sums.sine = sine;
+        sums
+    }
+
+    /// The fitted cosine of a lane; times in minutes from the start of the stretch.
+    fn fit(&self, lane: usize) -> Option<CosineFit> {
+        let [cos, sin] = self.wave;
+        let [[cos_cos, cos_sin], [_, sin_sin], _] = self.design;
+        fit_from_normal(
+            [
+                [self.rows, cos, sin, self.value[lane]],
+                [cos, cos_cos, cos_sin, self.cosine[lane]],
+                [sin, cos_sin, sin_sin, self.sine[lane]],
+            ],
+            1440.0,
+        )
+    }
+}
+
+/// Highest value of each lane and the row in which it stands first.
+struct Extreme {
+    value: [f64; LANES],
+    row: [f64; LANES],
+}
+
+impl Extreme {
+    #[expect(
+        clippy::cast_possible_truncation,
+        clippy::cast_sign_loss,
+        reason = "a row number is a small whole number"
+    )]
+    fn row(&self, lane: usize) -> usize {
+        self.row[lane] as usize
+    }
+}
+
+/// Highest value of `sign` times the rows.
+#[inline(always)]
+fn extreme(rows: &[[f64; LANES]], sign: f64) -> Extreme {
+    let (mut value, mut at) = ([f64::NEG_INFINITY; LANES], [0.0; LANES]);
+    let mut number = 0.0;
+    for row in rows {
+        for lane in 0..LANES {
+            let better = sign * row[lane] > value[lane];
+            value[lane] = if better { sign * row[lane] } else { value[lane] };
+            at[lane] = if better { number } else { at[lane] };
+        }
+        number += 1.0;
+    }
+    Extreme { value, row: at }
+}
+
+/// Rows around `nadir` in which a lane stays below a threshold.
+fn below(
+    rows: &[[f64; LANES]],
+    lane: usize,
+    nadir: usize,
+    threshold: f64,
+) -> std::ops::Range<usize> {
+    let (mut start, mut end) = (nadir, nadir);
+    while start > 0 && rows[start - 1][lane] < threshold {
+        start -= 1;
+    }
+    while end + 1 < rows.len() && rows[end][lane] < threshold {
+        end += 1;
+    }
+    start..end
 }

@@ -3,42 +3,33 @@
 //! Four published models, each with its own whole parameter set; the state is always three numbers a member:
 //! `x`, `xc`, `n` for the oscillators of van der Pol type, `R`, `psi`, `n` for the macroscopic one.
 //! The members of a unit are the lanes: one formula, no branch on data, no library function inside the loop over lanes.
+#![expect(
+    clippy::inline_always,
+    reason = "the loop over lanes is compiled for several instruction sets; what it calls must be inlined"
+)]
 
+mod drive;
 mod hannay;
+mod kernel;
+mod marker;
 mod van_der_pol;
 
+pub use drive::UnitDrive;
+pub use kernel::{LastStep, Moved, PacemakerState};
+pub use marker::MarkerReader;
+
 use super::parameters::{PacemakerReading, PacemakerSet};
-use crate::units::Sourced;
+use crate::numeric::instruction_set::InstructionSet;
+use drive::{LightLaw, LightNumbers, Saturation};
+use kernel::Advance;
 use hannay::Hannay;
-use van_der_pol::{Arousal, Form, VanDerPol};
+use van_der_pol::{Arousal, Form, Revised, Simple, VanDerPol};
 
 /// Members simulated side by side.
 pub const LANES: usize = 16;
 
-/// Minutes after which a second crossing of the marker angle is believed: one marker per cycle, never two.
-const SHORTEST_CYCLE_MIN: f64 = 12.0 * 60.0;
-/// Step of the integration, hours: one minute. The error against an adaptive solver is below 0.001 min of phase (rk4 step table of the reference runs).
-const STEP_H: f64 = 1.0 / 60.0;
-
-/// State of the members of a unit, structure of arrays.
-#[derive(Debug, Clone, PartialEq)]
-pub struct PacemakerState {
-    /// `x`, or `R`.
-    pub first: [f64; LANES],
-    /// `xc`, or `psi` (radians, growing).
-    pub second: [f64; LANES],
-    /// Share of activated photoreceptors.
-    pub n: [f64; LANES],
-}
-
-/// What acts on the members during one step.
-#[derive(Debug, Clone, PartialEq)]
-pub struct PacemakerInput {
-    /// Activation rate by light, 1/min.
-    pub alpha: [f64; LANES],
-    /// Non-photic drive before its phase factor: `rho (1/3 - sigma)`.
-    pub arousal: [f64; LANES],
-}
+/// Longest step of the integration, minutes: the phase error against an adaptive solver stays below 0.01 min over 80 days up to 10 000 lux.
+pub const LONGEST_STEP_MIN: i64 = 6;
 
 /// A pacemaker with the numbers of its set, ready for use.
 #[derive(Debug, Clone, PartialEq)]
@@ -46,6 +37,8 @@ pub struct Pacemaker {
     model: Model,
     light: LightLaw,
     reading: PacemakerReading,
+    instructions: InstructionSet,
+    longest_step_min: i64,
 }
 
 #[derive(Debug, Clone, PartialEq)]
@@ -54,45 +47,43 @@ enum Model {
     Hannay(Hannay),
 }
 
-/// Activation of the photoreceptors by light.
-#[derive(Debug, Clone, Copy, PartialEq)]
-struct LightLaw {
-    alpha0: f64,
-    exponent: f64,
-    i0: f64,
-    saturation: Saturation,
+/// The light process of a set.
+macro_rules! light_law {
+    ($set:ident, $saturation:expr) => {
+        LightLaw::new(
+            &LightNumbers {
+                alpha0: &$set.process_l.alpha0,
+                beta: &$set.process_l.beta,
+                gain: &$set.process_l.gain,
+                exponent: &$set.process_l.exponent,
+                i0: &$set.process_l.i0,
+            },
+            $saturation,
+        )
+    };
 }
 
-impl LightLaw {
-    fn new(alpha0: &Sourced, exponent: &Sourced, i0: &Sourced, saturation: Saturation) -> Self {
-        Self {
-            alpha0: alpha0.value,
-            exponent: exponent.value,
-            i0: i0.value,
-            saturation,
-        }
-    }
+fn cosine_and_sine(angle_rad: f64) -> (f64, f64) {
+    (libm::cos(angle_rad), libm::sin(angle_rad))
 }
 
-#[derive(Debug, Clone, Copy, PartialEq)]
-enum Saturation {
-    /// `alpha0 (I/I0)^p`
-    Open,
-    /// `alpha0 (I/I0)^p I/(I + I1)`, lux.
-    Dim(f64),
-    /// `alpha0 I^p/(I^p + I0)`
-    Hill,
+fn sine_and_cosine(angle_rad: f64) -> (f64, f64) {
+    (libm::sin(angle_rad), libm::cos(angle_rad))
 }
 
 impl Pacemaker {
-    /// The equations with the numbers of a parameter set.
+    /// The equations with the numbers of a parameter set, on the best instruction set of this machine.
     pub fn new(set: &PacemakerSet) -> Self {
+        Self::on(InstructionSet::best(), set)
+    }
+
+    /// The same on an instruction set of one's choice; the results have the same bits on all.
+    pub fn on(instructions: InstructionSet, set: &PacemakerSet) -> Self {
+        let reading = set.reading();
         let (model, light) = match set {
             PacemakerSet::Hilaire(s) => (
                 Model::VanDerPol(VanDerPol {
                     form: Form::Revised,
-                    beta: s.process_l.beta.value,
-                    gain: s.process_l.gain.value,
                     mu: s.process_p.mu.value,
                     q: s.process_p.q.value,
                     k: s.process_p.k.value,
@@ -102,76 +93,69 @@ impl Pacemaker {
                         awake_share: s.non_photic.awake_share.value,
                         steepness: s.non_photic.steepness.value,
                     },
+                    marker: cosine_and_sine(reading.angle_rad),
                 }),
-                LightLaw::new(
-                    &s.process_l.alpha0,
-                    &s.process_l.exponent,
-                    &s.process_l.i0,
-                    Saturation::Dim(s.process_l.i1.value),
-                ),
+                light_law!(s, Saturation::Dim(s.process_l.i1.value)),
             ),
             PacemakerSet::Jewett(s) => (
                 Model::VanDerPol(VanDerPol {
                     form: Form::Revised,
-                    beta: s.process_l.beta.value,
-                    gain: s.process_l.gain.value,
                     mu: s.process_p.mu.value,
                     q: s.process_p.q.value,
                     k: s.process_p.k.value,
                     f: s.process_p.f.value,
                     arousal: Arousal::default(),
+                    marker: cosine_and_sine(reading.angle_rad),
                 }),
-                LightLaw::new(
-                    &s.process_l.alpha0,
-                    &s.process_l.exponent,
-                    &s.process_l.i0,
-                    Saturation::Open,
-                ),
+                light_law!(s, Saturation::Open),
             ),
             PacemakerSet::Forger(s) => (
                 Model::VanDerPol(VanDerPol {
                     form: Form::Simple,
-                    beta: s.process_l.beta.value,
-                    gain: s.process_l.gain.value,
                     mu: s.process_p.mu.value,
                     q: 0.0,
                     k: s.process_p.k.value,
                     f: s.process_p.f.value,
                     arousal: Arousal::default(),
+                    marker: cosine_and_sine(reading.angle_rad),
                 }),
-                LightLaw::new(
-                    &s.process_l.alpha0,
-                    &s.process_l.exponent,
-                    &s.process_l.i0,
-                    Saturation::Open,
-                ),
+                light_law!(s, Saturation::Open),
             ),
             PacemakerSet::Hannay(s) => (
                 Model::Hannay(Hannay {
-                    beta: s.process_l.beta.value,
-                    gain: s.process_l.gain.value,
                     coupling: s.oscillator.coupling.value,
                     gamma: s.oscillator.gamma.value,
                     beta1: s.oscillator.beta1.value,
                     a1: s.oscillator.a1.value,
                     a2: s.oscillator.a2.value,
-                    beta_l1: s.oscillator.beta_l1.value,
-                    beta_l2: s.oscillator.beta_l2.value,
+                    beta_l1: sine_and_cosine(s.oscillator.beta_l1.value),
+                    beta_l2: sine_and_cosine(s.oscillator.beta_l2.value),
                     sigma: s.oscillator.sigma.value,
+                    marker_rad: reading.angle_rad,
                 }),
-                LightLaw::new(
-                    &s.process_l.alpha0,
-                    &s.process_l.exponent,
-                    &s.process_l.i0,
-                    Saturation::Hill,
-                ),
+                light_law!(s, Saturation::Hill),
             ),
         };
         Self {
             model,
             light,
-            reading: set.reading(),
+            reading,
+            instructions,
+            longest_step_min: LONGEST_STEP_MIN,
         }
+    }
+
+    /// The same pacemaker with another longest step, minutes; for convergence tests.
+    pub fn with_longest_step(self, longest_step_min: i64) -> Self {
+        Self {
+            longest_step_min: longest_step_min.max(1),
+            ..self
+        }
+    }
+
+    /// The instruction set on which it runs.
+    pub fn instructions(&self) -> InstructionSet {
+        self.instructions
     }
 
     /// The state from which habitual days are lived.
@@ -216,20 +200,7 @@ impl Pacemaker {
     /// assert_eq!(pacemaker.alpha(0.0), 0.0);
     /// ```
     pub fn alpha(&self, light_lux: f64) -> f64 {
-        if light_lux <= 0.0 {
-            return 0.0;
-        }
-        let law = &self.light;
-        let relative = || libm::pow(light_lux / law.i0, law.exponent);
-        law.alpha0
-            * match law.saturation {
-                Saturation::Open => relative(),
-                Saturation::Dim(i1_lux) => relative() * light_lux / (light_lux + i1_lux),
-                Saturation::Hill => {
-                    let raised = libm::pow(light_lux, law.exponent);
-                    raised / (raised + law.i0)
-                }
-            }
+        self.light.alpha(light_lux)
     }
 
     /// Non-photic drive before its phase factor: `rho (1/3 - sigma)`, sigma = 1 asleep; 0 in models without one.
@@ -251,7 +222,9 @@ impl Pacemaker {
         }
     }
 
-    /// One minute of classical Runge-Kutta under constant light and sleep state.
+    /// Moves a unit under constant light and sleep: classical Runge-Kutta in steps of at most [`LONGEST_STEP_MIN`], the photoreceptors exactly.
+    ///
+    /// Stops after `minutes`, or at the end of the step in which the first member passes its marker.
     ///
     /// # Equation
     ///
@@ -270,11 +243,11 @@ impl Pacemaker {
     ///
     /// # Units
     ///
-    /// `state` and `input` hold one value per member; `pace` is that of [`Pacemaker::pace`]. The state is moved by one minute.
+    /// `state` and `drive` hold one value per member; `pace` is that of [`Pacemaker::pace`].
     ///
     /// # Range
     ///
-    /// Up to 10 000 lux the phase error of one-minute steps is below 0.001 min against an adaptive solver; at 100 000 lux below 0.02 min.
+    /// Up to 10 000 lux the phase error is below 0.01 min against an adaptive solver over 80 days.
     ///
     /// # Source
     ///
@@ -283,27 +256,44 @@ impl Pacemaker {
     /// # Example
     ///
     /// ```
-    /// use acroshift::physiology::pacemaker::{LANES, Pacemaker, PacemakerInput};
+    /// use acroshift::physiology::pacemaker::{LANES, Pacemaker, UnitDrive};
     /// use acroshift::physiology::ModelSets;
     /// let pacemaker = Pacemaker::new(&ModelSets::embedded().pacemaker);
     /// let mut state = pacemaker.start();
-    /// let dark = PacemakerInput { alpha: [0.0; LANES], arousal: [pacemaker.arousal(true); LANES] };
+    /// let dark = UnitDrive::dark(&pacemaker);
     /// let pace = [pacemaker.pace(24.2); LANES];
-    /// for _ in 0..60 {
-    ///     pacemaker.step(&mut state, &dark, &pace);
-    /// }
+    /// let moved = pacemaker.advance(&mut state, &dark, &pace, 60);
+    /// assert_eq!(moved.minutes, 60);
     /// // Photoreceptors recover in the dark: n = 0.3 exp(-60 * 0.007).
-    /// assert!((state.n[0] - 0.3 * (-0.42_f64).exp()).abs() < 1e-6);
+    /// assert!((state.n[0] - 0.3 * (-0.42_f64).exp()).abs() < 1e-12);
     /// ```
-    pub fn step(&self, state: &mut PacemakerState, input: &PacemakerInput, pace: &[f64; LANES]) {
+    pub fn advance(
+        &self,
+        state: &mut PacemakerState,
+        drive: &UnitDrive,
+        pace: &[f64; LANES],
+        minutes: i64,
+    ) -> Moved {
         // The model is chosen once, outside the loop over lanes.
+        macro_rules! with {
+            ($oscillator:expr) => {
+                self.instructions.run(Advance {
+                    oscillator: $oscillator,
+                    state,
+                    drive,
+                    pace,
+                    minutes,
+                    longest_step: self.longest_step_min,
+                })
+            };
+        }
         match &self.model {
-            Model::VanDerPol(model) => step_lanes(state, |lane, now| {
-                model.step(now, input.alpha[lane], input.arousal[lane], pace[lane])
-            }),
-            Model::Hannay(model) => step_lanes(state, |lane, now| {
-                model.step(now, input.alpha[lane], pace[lane])
-            }),
+            Model::VanDerPol(model) => match (model.form, model.arousal.rho > 0.0) {
+                (Form::Simple, _) => with!(Simple(model)),
+                (Form::Revised, true) => with!(Revised::<true>(model)),
+                (Form::Revised, false) => with!(Revised::<false>(model)),
+            },
+            Model::Hannay(model) => with!(model),
         }
     }
 
@@ -320,88 +310,20 @@ impl Pacemaker {
         )
     }
 
-    /// Where within the minute the state crossed the marker angle, as a share of the minute.
+    /// Radius of the oscillation, in the unit of its first variable.
+    pub fn radius(&self, (first, second): (f64, f64)) -> f64 {
+        match &self.model {
+            Model::VanDerPol(_) => libm::hypot(first, second),
+            Model::Hannay(_) => first,
+        }
+    }
+
+    /// Where within a step the state crossed the marker angle, as a share of the step.
     ///
     /// The polar angle is used, never a count of minima of `x`: light near `CBTmin` makes a second minimum in one cycle.
     fn crossing(&self, before: (f64, f64), after: (f64, f64)) -> Option<f64> {
         let from = self.angle_past_marker(before.0, before.1);
         let to = self.angle_past_marker(after.0, after.1);
         (from < 0.0 && to >= 0.0 && to - from < 1.0).then(|| from / (from - to))
-    }
-}
-
-/// Moves every lane by its own step.
-#[inline]
-fn step_lanes(state: &mut PacemakerState, step: impl Fn(usize, [f64; 3]) -> [f64; 3]) {
-    let lanes = state
-        .first
-        .iter_mut()
-        .zip(&mut state.second)
-        .zip(&mut state.n);
-    for (lane, ((first, second), n)) in lanes.enumerate() {
-        [*first, *second, *n] = step(lane, [*first, *second, *n]);
-    }
-}
-
-/// One classical Runge-Kutta step of three variables.
-#[inline]
-fn runge_kutta(state: [f64; 3], step: f64, rate: impl Fn([f64; 3]) -> [f64; 3]) -> [f64; 3] {
-    let moved = |by: f64, k: [f64; 3]| {
-        [
-            state[0] + by * k[0],
-            state[1] + by * k[1],
-            state[2] + by * k[2],
-        ]
-    };
-    let half = step / 2.0;
-    let a = rate(state);
-    let b = rate(moved(half, a));
-    let c = rate(moved(half, b));
-    let d = rate(moved(step, c));
-    let sixth = step / 6.0;
-    [0, 1, 2].map(|i| state[i] + sixth * (a[i] + 2.0 * b[i] + 2.0 * c[i] + d[i]))
-}
-
-/// Finds `CBTmin` as the state moves on.
-#[derive(Debug, Clone, PartialEq)]
-pub struct MarkerReader {
-    last_crossing_min: f64,
-}
-
-impl MarkerReader {
-    /// A reader that has seen no marker yet.
-    pub fn new() -> Self {
-        Self {
-            last_crossing_min: f64::NEG_INFINITY,
-        }
-    }
-
-    /// A reader that knows the last `CBTmin`, minutes since the epoch.
-    pub fn after(pacemaker: &Pacemaker, cbtmin_min: f64) -> Self {
-        Self {
-            last_crossing_min: cbtmin_min - pacemaker.reading.cbtmin_offset_min,
-        }
-    }
-
-    /// `CBTmin` in minutes since the epoch, if the minute from `minute` held the crossing that announces it.
-    pub fn read(
-        &mut self,
-        pacemaker: &Pacemaker,
-        minute: f64,
-        before: (f64, f64),
-        after: (f64, f64),
-    ) -> Option<f64> {
-        let crossing = minute + pacemaker.crossing(before, after)?;
-        if crossing - self.last_crossing_min <= SHORTEST_CYCLE_MIN {
-            return None;
-        }
-        self.last_crossing_min = crossing;
-        Some(crossing + pacemaker.reading.cbtmin_offset_min)
-    }
-}
-
-impl Default for MarkerReader {
-    fn default() -> Self {
-        Self::new()
     }
 }

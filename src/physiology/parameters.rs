@@ -124,6 +124,26 @@ pub enum PacemakerName {
     Hannay2019,
 }
 
+impl PacemakerName {
+    /// Every pacemaker, the default first.
+    pub const ALL: [Self; 4] = [
+        Self::Hilaire2007,
+        Self::Forger1999,
+        Self::Jewett1999,
+        Self::Hannay2019,
+    ];
+
+    /// Its name in files and options.
+    pub fn word(self) -> &'static str {
+        match self {
+            Self::Hilaire2007 => "hilaire2007",
+            Self::Forger1999 => "forger1999",
+            Self::Jewett1999 => "jewett1999",
+            Self::Hannay2019 => "hannay2019",
+        }
+    }
+}
+
 /// The whole parameter set of one pacemaker.
 #[derive(Debug, Clone, PartialEq)]
 pub enum PacemakerSet {

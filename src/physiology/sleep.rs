@@ -27,15 +27,28 @@ pub struct SleepModel {
     after_mid_sleep_min: f64,
     lowering: f64,
     share_at_stake: f64,
-    shortest_min: f64,
+    shortest_min: i64,
     process_c: PeriodicTable,
+    /// Farthest that process C moves a threshold.
+    reach: f64,
+    /// Distance of the minutes at which sleep is decided.
+    grid_min: i64,
+    /// What a step of the grid leaves of the distance from 1, and of the pressure.
     rise: f64,
     fall: f64,
 }
 
+/// Distance of the minutes at which members decide on sleep.
+pub const SLEEP_GRID_MIN: i64 = 2;
+
 impl SleepModel {
     /// The rules with the numbers of a parameter set.
     pub fn new(set: &SleepSet) -> Self {
+        Self::on_grid(set, SLEEP_GRID_MIN)
+    }
+
+    /// The same with decisions at whole multiples of `grid_min` minutes, for convergence tests.
+    pub fn on_grid(set: &SleepSet, grid_min: i64) -> Self {
         let c = &set.process_c;
         let sines = [&c.sine1, &c.sine2, &c.sine3, &c.sine4, &c.sine5].map(|s| s.value);
         let process_c = PeriodicTable::of(|minute| {
@@ -54,10 +67,31 @@ impl SleepModel {
             after_mid_sleep_min: c.after_mid_sleep.value * 60.0,
             lowering: set.effort.lowering.value,
             share_at_stake: set.effort.share_at_stake.value,
-            shortest_min: set.effort.shortest_sleep.value * 60.0,
+            shortest_min: Minute::nearest(set.effort.shortest_sleep.value * 60.0).0,
+            reach: c.amplitude.value * sines.iter().map(|sine| sine.abs()).sum::<f64>(),
             process_c,
-            rise: libm::exp(-1.0 / tau_rise_min),
-            fall: libm::exp(-1.0 / tau_fall_min),
+            grid_min,
+            rise: libm::exp(-Minute(grid_min).as_f64() / tau_rise_min),
+            fall: libm::exp(-Minute(grid_min).as_f64() / tau_fall_min),
+        }
+    }
+
+    /// The first minute at or after a decimal one at which sleep is decided.
+    pub fn on_or_after(&self, minute: f64) -> i64 {
+        let whole = Minute::from_which(minute).0;
+        -(-whole).div_euclid(self.grid_min) * self.grid_min
+    }
+
+    fn next_decision(&self, minute: i64) -> i64 {
+        (minute.div_euclid(self.grid_min) + 1) * self.grid_min
+    }
+
+    /// What the minutes from `from` to `to` leave of a distance that falls with `tau_min`; `step` is what one step of the grid leaves.
+    fn left(&self, from: i64, to: i64, tau_min: f64, step: f64) -> f64 {
+        if to - from == self.grid_min {
+            step
+        } else {
+            libm::exp(-Minute(to - from).as_f64() / tau_min)
         }
     }
 
@@ -93,29 +127,22 @@ impl SleepModel {
     }
 }
 
-/// What the surroundings allow at a minute.
+/// What the surroundings allow for a while.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct Surroundings {
-    /// Elapsed minute.
-    pub minute: i64,
-    /// Minute shown by the local clock, from the epoch's midnight.
-    pub clock_min: i64,
     /// Off duty, home and past personal time.
     pub sleep_possible: bool,
     /// Latest waking before the next duty.
     pub alarm: Option<i64>,
-}
-
-/// A change of state.
-#[derive(Debug, Clone, Copy, PartialEq, Eq)]
-pub enum Transition {
-    /// Fell asleep at this minute.
-    FellAsleep,
-    /// Woke at this minute.
-    Woke,
+    /// They hold up to this minute.
+    pub until: i64,
+    /// What the local clock shows beyond elapsed minutes.
+    pub clock_shift_min: i64,
 }
 
 /// One person's sleep regulation.
+///
+/// Between two changes of state the pressure is an exponential, so the next change is looked for ahead and nothing is done on the way.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Sleeper {
     bed_min: f64,
@@ -124,9 +151,10 @@ pub struct Sleeper {
     lower: f64,
     /// Zero of process C at the habitual phase, minutes since the epoch's midnight.
     zero_min: f64,
-    /// Pressure S.
+    /// Pressure S at the last change.
     pressure: f64,
-    asleep_since: Option<i64>,
+    changed_at: i64,
+    asleep: bool,
     last_wake: i64,
     slept_in_night_min: f64,
     night: f64,
@@ -150,7 +178,8 @@ impl Sleeper {
             lower: wake_pressure - model.amplitude * c_at(bed_min + need_min),
             zero_min,
             pressure: 1.0 - (1.0 - wake_pressure) * libm::exp(-awake_min / model.tau_rise_min),
-            asleep_since: None,
+            changed_at: start,
+            asleep: false,
             last_wake: start - Minute::nearest(awake_min).0,
             slept_in_night_min: need_min,
             night,
@@ -159,7 +188,7 @@ impl Sleeper {
 
     /// Is the person asleep?
     pub fn asleep(&self) -> bool {
-        self.asleep_since.is_some()
+        self.asleep
     }
 
     /// Minute of the last waking.
@@ -167,74 +196,167 @@ impl Sleeper {
         self.last_wake
     }
 
-    /// Decides at a whole minute; `displacement_min` is how much later `CBTmin` stands than on habitual days.
-    pub fn decide(
-        &mut self,
-        model: &SleepModel,
-        around: Surroundings,
-        displacement_min: f64,
-    ) -> Option<Transition> {
-        let into_night = self.minutes_into_night(around.clock_min);
-        let c = model
-            .process_c
-            .at(Minute(around.minute).as_f64() - self.zero_min - displacement_min);
-        if let Some(onset) = self.asleep_since {
-            let natural = self.pressure <= self.lower + model.amplitude * c
-                && Minute(around.minute - onset).as_f64() >= model.shortest_min - TOLERANCE_MIN;
-            if !around.sleep_possible || natural {
-                self.asleep_since = None;
-                self.last_wake = around.minute;
-                return Some(Transition::Woke);
-            }
-            return None;
-        }
-        if self.falls_asleep(model, around, into_night, c) {
-            self.asleep_since = Some(around.minute);
-            return Some(Transition::FellAsleep);
-        }
-        None
-    }
-
-    /// Minutes since the sleep-counting day began, 4 h before a habitual bedtime of 8 h of sleep; a new one empties the count of sleep.
-    fn minutes_into_night(&mut self, clock_min: i64) -> f64 {
-        let from_start = Minute(clock_min).as_f64() - self.bed_min + self.need_min / 2.0;
-        let night = ((from_start + TOLERANCE_MIN) / DAY_MIN).floor();
+    /// Falls asleep or wakes.
+    pub fn turn(&mut self, model: &SleepModel, minute: i64, clock_shift_min: i64) {
+        self.pressure = self.pressure_at(model, minute);
+        let (night, into_night) = self.place_in_night(Minute(minute + clock_shift_min).as_f64());
         if night > self.night {
             self.night = night;
             self.slept_in_night_min = 0.0;
         }
-        from_start - night * DAY_MIN
+        if self.asleep {
+            // What was slept before this sleep-counting day began does not count.
+            self.slept_in_night_min += Minute(minute - self.changed_at).as_f64().min(into_night);
+            self.last_wake = minute;
+        }
+        self.asleep = !self.asleep;
+        self.changed_at = minute;
+    }
+
+    /// The minute, from `from` on and while the surroundings hold, at which the person falls asleep or wakes by itself.
+    ///
+    /// `displacement_min` is how much later `CBTmin` stands than on habitual days.
+    pub fn next_change(
+        &self,
+        model: &SleepModel,
+        from: i64,
+        around: &Surroundings,
+        displacement_min: f64,
+    ) -> Option<i64> {
+        let zero_min = self.zero_min + displacement_min;
+        if self.asleep {
+            self.next_waking(model, from, around, zero_min)
+        } else {
+            self.next_onset(model, from, around, zero_min)
+        }
+    }
+
+    fn pressure_at(&self, model: &SleepModel, minute: i64) -> f64 {
+        let since = Minute(minute - self.changed_at).as_f64();
+        if self.asleep {
+            self.pressure * libm::exp(-since / model.tau_fall_min)
+        } else {
+            1.0 - (1.0 - self.pressure) * libm::exp(-since / model.tau_rise_min)
+        }
+    }
+
+    fn next_waking(
+        &self,
+        model: &SleepModel,
+        from: i64,
+        around: &Surroundings,
+        zero_min: f64,
+    ) -> Option<i64> {
+        let mut minute = from.max(model.on_or_after(
+            Minute(self.changed_at + model.shortest_min).as_f64(),
+        ));
+        // Above this pressure no phase lets the person wake.
+        let highest = self.lower + model.reach;
+        let now = self.pressure_at(model, minute);
+        if now > highest {
+            let wait = model.tau_fall_min * libm::log(now / highest);
+            minute = minute.max(model.on_or_after(Minute(minute).as_f64() + wait) - model.grid_min);
+        }
+        let mut pressure = self.pressure_at(model, minute);
+        while minute < around.until {
+            let c = model.process_c.at(Minute(minute).as_f64() - zero_min);
+            if pressure <= self.lower + model.amplitude * c {
+                return Some(minute);
+            }
+            let next = model.next_decision(minute);
+            pressure *= model.left(minute, next, model.tau_fall_min, model.fall);
+            minute = next;
+        }
+        None
+    }
+
+    fn next_onset(
+        &self,
+        model: &SleepModel,
+        from: i64,
+        around: &Surroundings,
+        zero_min: f64,
+    ) -> Option<i64> {
+        if !around.sleep_possible {
+            return None;
+        }
+        let until = around.alarm.map_or(around.until, |alarm| {
+            around.until.min(alarm - model.shortest_min + 1)
+        });
+        let mut minute = from;
+        // Below this pressure no phase and no effort lets the person fall asleep.
+        let lowest = self.upper - model.reach - model.lowering;
+        let now = self.pressure_at(model, minute);
+        if now < lowest {
+            let wait = model.tau_rise_min * libm::log((1.0 - now) / (1.0 - lowest));
+            minute = minute.max(model.on_or_after(Minute(minute).as_f64() + wait) - model.grid_min);
+        }
+        let mut deficit = 1.0 - self.pressure_at(model, minute);
+        while minute < until {
+            if self.falls_asleep(model, minute, around, 1.0 - deficit, zero_min) {
+                return Some(minute);
+            }
+            let next = model.next_decision(minute);
+            deficit *= model.left(minute, next, model.tau_rise_min, model.rise);
+            minute = next;
+        }
+        None
+    }
+
+    /// The sleep-counting day of a clock minute and the minutes since it began, 4 h before a habitual bedtime of 8 h of sleep.
+    fn place_in_night(&self, clock_min: f64) -> (f64, f64) {
+        let from_start = clock_min - self.bed_min + self.need_min / 2.0;
+        let night = ((from_start + TOLERANCE_MIN) / DAY_MIN).floor();
+        (night, from_start - night * DAY_MIN)
     }
 
     fn falls_asleep(
         &self,
         model: &SleepModel,
-        around: Surroundings,
-        into_night: f64,
-        c: f64,
+        minute: i64,
+        around: &Surroundings,
+        pressure: f64,
+        zero_min: f64,
     ) -> bool {
-        let until_alarm = around.alarm.map_or(f64::INFINITY, |alarm| {
-            Minute(alarm - around.minute).as_f64()
-        });
-        if !around.sleep_possible || until_alarm < model.shortest_min - TOLERANCE_MIN {
-            return false;
+        let until_alarm = around
+            .alarm
+            .map_or(f64::INFINITY, |alarm| Minute(alarm - minute).as_f64());
+        let clock_min = Minute(minute + around.clock_shift_min).as_f64();
+        let (night, into_night) = self.place_in_night(clock_min);
+        let slept = if night > self.night {
+            0.0
+        } else {
+            self.slept_in_night_min
+        };
+        let (allowed, effort) = self.intention(model, into_night, until_alarm, slept);
+        // Not allowed: asleep only when overwhelmed.
+        let threshold = if allowed {
+            self.upper - model.lowering * effort
+        } else {
+            self.upper + model.lowering
+        };
+        pressure >= threshold - model.reach && {
+            let c = model.process_c.at(Minute(minute).as_f64() - zero_min);
+            pressure >= threshold + model.amplitude * c
         }
-        let (allowed, effort) = self.intention(model, into_night, until_alarm);
-        let upper = self.upper + model.amplitude * c;
-        (allowed && self.pressure >= upper - model.lowering * effort)
-            || self.pressure >= upper + model.lowering
     }
 
     /// Does the person want to sleep, and how much effort is made?
     ///
     /// A habitual night that has begun and of which less than half was slept is *owed*: sleep is wanted at full effort, until the middle of the waking day.
     /// Otherwise bedtime is the habitual one, advanced by the share of the night that an alarm would take.
-    fn intention(&self, model: &SleepModel, into_night: f64, until_alarm: f64) -> (bool, f64) {
+    fn intention(
+        &self,
+        model: &SleepModel,
+        into_night: f64,
+        until_alarm: f64,
+        slept_min: f64,
+    ) -> (bool, f64) {
         let half = self.need_min / 2.0;
         let begun = into_night >= half - TOLERANCE_MIN;
         if begun
             && into_night < 720.0 + self.need_min - TOLERANCE_MIN
-            && self.slept_in_night_min < self.need_min * model.share_at_stake
+            && slept_min < self.need_min * model.share_at_stake
         {
             return (true, 1.0);
         }
@@ -244,16 +366,6 @@ impl Sleeper {
         let effort = ((self.need_min - until_alarm) / (model.share_at_stake * self.need_min))
             .clamp(0.0, 1.0);
         (until_bed <= advance + TOLERANCE_MIN, effort)
-    }
-
-    /// Lives one minute in the present state.
-    pub fn live_a_minute(&mut self, model: &SleepModel) {
-        if self.asleep() {
-            self.slept_in_night_min += 1.0;
-            self.pressure *= model.fall;
-        } else {
-            self.pressure = 1.0 - (1.0 - self.pressure) * model.rise;
-        }
     }
 }
 

@@ -40,6 +40,8 @@ pub struct MemberTrack {
     pub sleeps: Vec<SleepEpisode>,
     /// `CBTmin`, minutes since the epoch.
     pub cbtmin_min: Vec<f64>,
+    /// Radius of the pacemaker's oscillation at each `CBTmin` as a share of the habitual one.
+    pub amplitude_ratio: Vec<f64>,
     /// `CBTmin` on habitual days, minutes since the epoch (of the day before the roster).
     pub habitual_cbtmin_min: f64,
 }
@@ -58,13 +60,14 @@ impl MemberTrack {
                 }
             })
             .collect();
-        let cbtmins = (0..=days)
+        let cbtmins: Vec<f64> = (0..=days)
             .rev()
             .map(|back| cbtmin_min - 1440.0 * Minute(back).as_f64())
             .collect();
         Self {
             member,
             sleeps,
+            amplitude_ratio: vec![1.0; cbtmins.len()],
             cbtmin_min: cbtmins,
             habitual_cbtmin_min: cbtmin_min,
         }
@@ -135,14 +138,18 @@ impl MemberTrack {
             .max(1);
         let before = self.cbtmin_min[index - 1];
         let since = minute - before;
-        let phase = match self.cbtmin_min.get(index) {
-            Some(after) => {
-                let cycles = ((after - before) / 1440.0).round().max(1.0);
-                since / (after - before) * 1440.0 * cycles
-            }
-            None => since,
+        let phase = if index < self.cbtmin_min.len() {
+            since * self.phase_rate(index - 1)
+        } else {
+            since
         };
         crate::numeric::circular::wrap(phase, 1440.0)
+    }
+
+    /// Minutes of phase per minute in a cycle that has a next `CBTmin`: whole days are stretched evenly between the two.
+    pub fn phase_rate(&self, cycle: usize) -> f64 {
+        let length = self.cbtmin_min[cycle + 1] - self.cbtmin_min[cycle];
+        1440.0 * (length / 1440.0).round().max(1.0) / length
     }
 }
 

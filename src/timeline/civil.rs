@@ -56,6 +56,11 @@ impl CivilClock {
         Self { steps }
     }
 
+    /// Minutes at which the clock is changed.
+    pub fn changes(&self) -> impl Iterator<Item = Minute> {
+        self.steps.iter().skip(1).map(|(from, _)| *from)
+    }
+
     /// Minutes shown by the clock at `minute`, counted from the epoch's midnight.
     pub fn at(&self, minute: Minute) -> i64 {
         let index = self.steps.partition_point(|(from, _)| *from <= minute);

@@ -44,11 +44,18 @@ pub struct Segment {
 }
 
 /// The segments of a person with the given commute, from `start` to the end of the timeline.
-pub fn segments(timeline: &Timeline, commute_min: f64, start: Minute) -> Vec<Segment> {
+///
+/// `on_grid` gives the first minute at or after a decimal one at which a person's own times take effect; duties keep their minutes.
+pub fn segments(
+    timeline: &Timeline,
+    commute_min: f64,
+    start: Minute,
+    on_grid: impl Fn(f64) -> Minute,
+) -> Vec<Segment> {
     let around: Vec<Around> = (0..timeline.duties.len())
-        .map(|index| Around::of(timeline, index, commute_min))
+        .map(|index| Around::of(timeline, index, commute_min, &on_grid))
         .collect();
-    let edges = edges(timeline, &around, start);
+    let edges = edges(timeline, &around, start, &on_grid);
     edges
         .iter()
         .zip(edges.iter().skip(1))
@@ -56,7 +63,7 @@ pub fn segments(timeline: &Timeline, commute_min: f64, start: Minute) -> Vec<Seg
         .collect()
 }
 
-/// Times around one duty, rounded up to the whole minute at which they take effect.
+/// Times around one duty, rounded up to the minute of the grid at which they take effect.
 #[derive(Debug, Clone, Copy)]
 struct Around {
     leave_home: Minute,
@@ -66,7 +73,12 @@ struct Around {
 }
 
 impl Around {
-    fn of(timeline: &Timeline, index: usize, commute_min: f64) -> Self {
+    fn of(
+        timeline: &Timeline,
+        index: usize,
+        commute_min: f64,
+        on_grid: impl Fn(f64) -> Minute,
+    ) -> Self {
         let duty = &timeline.duties[index];
         let before = index
             .checked_sub(1)
@@ -79,10 +91,10 @@ impl Around {
         let personal_before = personal_min(timeline, before, commute_min);
         let personal_after = personal_min(timeline, after, commute_min);
         Self {
-            leave_home: Minute::from_which(duty.start.as_f64() - commute_min - 0.5),
-            arrive_home: Minute::from_which(duty.end.as_f64() + commute_min - 0.5),
-            sleep_from: Minute::from_which(duty.end.as_f64() + commute_min + personal_after),
-            alarm: Minute::from_which(duty.start.as_f64() - commute_min - personal_before),
+            leave_home: on_grid(duty.start.as_f64() - commute_min - 0.5),
+            arrive_home: on_grid(duty.end.as_f64() + commute_min - 0.5),
+            sleep_from: on_grid(duty.end.as_f64() + commute_min + personal_after),
+            alarm: on_grid(duty.start.as_f64() - commute_min - personal_before),
         }
     }
 }
@@ -102,7 +114,12 @@ fn personal_min(timeline: &Timeline, gap: Option<i64>, commute_min: f64) -> f64 
     }
 }
 
-fn edges(timeline: &Timeline, around: &[Around], start: Minute) -> Vec<Minute> {
+fn edges(
+    timeline: &Timeline,
+    around: &[Around],
+    start: Minute,
+    on_grid: impl Fn(f64) -> Minute,
+) -> Vec<Minute> {
     let mut edges = BTreeSet::from([start, timeline.end]);
     for (duty, times) in timeline.duties.iter().zip(around) {
         edges.extend([
@@ -115,8 +132,9 @@ fn edges(timeline: &Timeline, around: &[Around], start: Minute) -> Vec<Minute> {
         ]);
     }
     for day in &timeline.days {
-        edges.extend([day.sunrise, day.sunset]);
+        edges.extend([day.sunrise, day.sunset].map(|edge| on_grid(edge.as_f64())));
     }
+    edges.extend(timeline.clock.changes());
     edges
         .into_iter()
         .filter(|edge| (start..=timeline.end).contains(edge))

@@ -3,11 +3,11 @@
 //! | symbol | meaning | unit |
 //! |---|---|---|
 //! | `x`, `xc` | state of the oscillator, clockwise in the (x, xc) plane | 1 |
-//! | `n` | share of activated photoreceptors | 1 |
-//! | `alpha` | activation rate by light | 1/min |
+//! | `drive` | `G alpha (1 - n)`, light before the factors of phase | 1 |
+//! | `arousal` | `rho (1/3 - sigma)`, sleep and waking before the factor of phase | 1 |
 //! | `tau` | intrinsic period | h |
 
-use super::{STEP_H, runge_kutta};
+use super::kernel::{LaneInput, Oscillator, runge_kutta};
 use crate::numeric::lane;
 
 /// Which right-hand side.
@@ -23,13 +23,13 @@ pub(super) enum Form {
 #[derive(Debug, Clone, PartialEq)]
 pub(super) struct VanDerPol {
     pub(super) form: Form,
-    pub(super) beta: f64,
-    pub(super) gain: f64,
     pub(super) mu: f64,
     pub(super) q: f64,
     pub(super) k: f64,
     pub(super) f: f64,
     pub(super) arousal: Arousal,
+    /// Cosine and sine of the angle at which the marker is read.
+    pub(super) marker: (f64, f64),
 }
 
 /// Drive of sleep and waking; all 0 where light alone drives the clock.
@@ -47,61 +47,74 @@ impl VanDerPol {
         ratio * ratio
     }
 
-    /// One minute of one lane.
-    #[inline]
-    pub(super) fn step(
-        &self,
-        state: [f64; 3],
-        alpha: f64,
-        arousal: f64,
-        stiffness: f64,
-    ) -> [f64; 3] {
-        match self.form {
-            Form::Simple => runge_kutta(state, STEP_H, |s| self.simple(s, alpha, stiffness)),
-            Form::Revised => runge_kutta(state, STEP_H, |s| {
-                self.revised(s, alpha, arousal, stiffness)
-            }),
-        }
+    /// Drive of light with the factors of phase; the two 0.4 belong to the form of the published equation.
+    #[inline(always)]
+    fn light(x: f64, xc: f64, drive: f64) -> f64 {
+        drive * ((1.0 - 0.4 * x) * (1.0 - 0.4 * xc))
     }
 
-    /// Drive of light: `B = G (1 - n) alpha (1 - 0.4 x)(1 - 0.4 xc)`; the two 0.4 belong to the form of the published equation.
-    #[inline]
-    fn drive(&self, [x, xc, n]: [f64; 3], alpha: f64) -> f64 {
-        self.gain * alpha * (1.0 - n) * (1.0 - 0.4 * x) * (1.0 - 0.4 * xc)
+    /// Has the polar angle passed the marker? The oscillator runs clockwise.
+    #[inline(always)]
+    fn passed(&self, before: [f64; 2], after: [f64; 2]) -> bool {
+        let (cosine, sine) = self.marker;
+        let aside = |[x, xc]: [f64; 2]| -xc * cosine - x * sine;
+        let ahead = after[0] * cosine - after[1] * sine;
+        (aside(before) < 0.0) & (aside(after) >= 0.0) & (ahead > 0.0)
     }
+}
 
-    #[inline]
-    fn photoreceptors(&self, n: f64, alpha: f64) -> f64 {
-        60.0 * (alpha * (1.0 - n) - self.beta * n)
-    }
+/// The simpler model.
+#[derive(Debug, Clone, Copy)]
+pub(super) struct Simple<'a>(pub(super) &'a VanDerPol);
 
-    /// Right-hand side of the simpler model, per hour.
-    #[inline]
-    fn simple(&self, state: [f64; 3], alpha: f64, stiffness: f64) -> [f64; 3] {
+impl Oscillator for Simple<'_> {
+    #[inline(always)]
+    fn step(&self, state: [f64; 2], input: LaneInput, step_h: f64) -> [f64; 2] {
         const P12: f64 = std::f64::consts::PI / 12.0;
-        let [x, xc, n] = state;
-        let drive = self.drive(state, alpha);
-        let limit_cycle = self.mu * (xc - 4.0 * xc * xc * xc / 3.0);
-        [
-            P12 * (xc + drive),
-            P12 * (limit_cycle - x * (stiffness + self.k * drive)),
-            self.photoreceptors(n, alpha),
-        ]
+        let model = self.0;
+        runge_kutta(state, input.drive, step_h, |[x, xc], drive| {
+            let light = VanDerPol::light(x, xc, drive);
+            let limit_cycle = model.mu * (xc - 4.0 / 3.0 * xc * xc * xc);
+            [
+                P12 * (xc + light),
+                P12 * (limit_cycle - x * (input.pace + model.k * light)),
+            ]
+        })
     }
 
-    /// Right-hand side of the revised limit cycle, per hour.
-    #[inline]
-    fn revised(&self, state: [f64; 3], alpha: f64, arousal: f64, stiffness: f64) -> [f64; 3] {
+    #[inline(always)]
+    fn passed(&self, before: [f64; 2], after: [f64; 2]) -> bool {
+        self.0.passed(before, after)
+    }
+}
+
+/// The revised limit cycle.
+#[derive(Debug, Clone, Copy)]
+pub(super) struct Revised<'a, const AROUSED: bool>(pub(super) &'a VanDerPol);
+
+impl<const AROUSED: bool> Oscillator for Revised<'_, AROUSED> {
+    #[inline(always)]
+    fn step(&self, state: [f64; 2], input: LaneInput, step_h: f64) -> [f64; 2] {
         const P12: f64 = std::f64::consts::PI / 12.0;
-        let [x, xc, n] = state;
-        let drive = self.drive(state, alpha);
-        let x3 = x * x * x;
-        let non_photic = arousal * (1.0 - lane::tanh(self.arousal.steepness * x));
-        let limit_cycle = self.mu * (x / 3.0 + 4.0 * x3 / 3.0 - 256.0 * x3 * x3 * x / 105.0);
-        [
-            P12 * (xc + limit_cycle + drive + non_photic),
-            P12 * (self.q * drive * xc - x * (stiffness + self.k * drive)),
-            self.photoreceptors(n, alpha),
-        ]
+        let model = self.0;
+        runge_kutta(state, input.drive, step_h, |[x, xc], drive| {
+            let light = VanDerPol::light(x, xc, drive);
+            let square = x * x;
+            let limit_cycle =
+                x * (1.0 / 3.0 + square * (4.0 / 3.0 - 256.0 / 105.0 * (square * square)));
+            let mut push = xc + model.mu * limit_cycle + light;
+            if AROUSED {
+                push += input.arousal * lane::one_minus_tanh(model.arousal.steepness * x);
+            }
+            [
+                P12 * push,
+                P12 * (model.q * light * xc - x * (input.pace + model.k * light)),
+            ]
+        })
+    }
+
+    #[inline(always)]
+    fn passed(&self, before: [f64; 2], after: [f64; 2]) -> bool {
+        self.0.passed(before, after)
     }
 }

@@ -4,7 +4,7 @@
 //! Tolerances: state 1e-5 (one-minute Runge-Kutta against rtol 1e-10), markers 0.001 h, as the reference page suggests.
 
 use acroshift::physiology::pacemaker::{
-    LANES, MarkerReader, Pacemaker, PacemakerInput, PacemakerState,
+    LANES, MarkerReader, Pacemaker, PacemakerState, UnitDrive,
 };
 use acroshift::physiology::{ModelSets, PacemakerName};
 
@@ -142,20 +142,27 @@ impl Run {
     }
 
     fn stretch(&mut self, minutes: u32, lux: f64, asleep: bool) {
-        let input = PacemakerInput {
-            alpha: [self.pacemaker.alpha(lux); LANES],
-            arousal: [self.pacemaker.arousal(asleep); LANES],
-        };
-        for _ in 0..minutes {
-            let before = self.now();
-            self.pacemaker.step(&mut self.state, &input, &self.pace);
+        let mut drive = UnitDrive::dark(&self.pacemaker);
+        (0..LANES).for_each(|lane| drive.set(&self.pacemaker, lane, lux, asleep));
+        let end = self.minute + minutes;
+        while self.minute < end {
+            // States are read every hour.
+            let next = end.min((self.minute / 60 + 1) * 60);
+            let left = i64::from(next - self.minute);
+            let moved = self
+                .pacemaker
+                .advance(&mut self.state, &drive, &self.pace, left);
+            self.minute += u32::try_from(moved.minutes).unwrap();
             let after = self.now();
-            let at = f64::from(self.minute);
-            let ends = ((before[0], before[1]), (after[0], after[1]));
-            if let Some(cbtmin) = self.reader.read(&self.pacemaker, at, ends.0, ends.1) {
-                self.cbtmin_h.push(cbtmin / 60.0);
+            if let Some(last) = moved.passed {
+                let length = u32::try_from(last.minutes).unwrap();
+                let step = (f64::from(self.minute - length), f64::from(length));
+                let before = (last.first[0], last.second[0]);
+                let read = self
+                    .reader
+                    .read(&self.pacemaker, step, before, (after[0], after[1]));
+                self.cbtmin_h.extend(read.map(|cbtmin| cbtmin / 60.0));
             }
-            self.minute += 1;
             if self.minute.is_multiple_of(60) {
                 self.hourly.push(after);
             }

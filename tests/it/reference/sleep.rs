@@ -86,7 +86,7 @@ fn the_entry_state_agrees_with_the_reference() {
                 "{label}: {found}, expected {expected}"
             );
         }
-        let cbtmin_h = warm.cbtmin_min()[0] / 60.0 + 24.0;
+        let cbtmin_h = warm.markers()[0].cbtmin_min / 60.0 + 24.0;
         let expected = facts["cbtmin_clock"].as_f64().unwrap();
         assert!(
             (cbtmin_h - expected).abs() < 1e-4,

@@ -30,7 +30,11 @@ fn main() {
             let sets = ModelSets::with_pacemaker(name);
             let pacemaker = Pacemaker::on(set, &sets.pacemaker);
             let rate = lane_days_per_second(80 * 16, || pacemaker_days(&pacemaker, 80));
-            println!("{:>9} {:<12} {rate:>10.0} lane-days/s", set.name(), name.word());
+            println!(
+                "{:>9} {:<12} {rate:>10.0} lane-days/s",
+                set.name(),
+                name.word()
+            );
         }
     }
     println!("full physiology, 32 members, 80 days of 12-h night blocks");
@@ -88,7 +92,8 @@ fn pacemaker_days(pacemaker: &Pacemaker, days: u32) {
             (0..LANES).for_each(|lane| drive.set(pacemaker, lane, lux, asleep));
             let mut left = minutes;
             while left > 0 {
-                left -= pacemaker.advance(&mut state, &drive, &pace, left).minutes;
+                let span = (minutes - left, left);
+                left -= pacemaker.advance(&mut state, &drive, &pace, span).minutes;
             }
         }
     }
@@ -105,7 +110,9 @@ fn physiology_rate(set: InstructionSet, workers: u32, days: u32, size: usize) ->
         morning_daylight: None,
     };
     let members: Vec<Member> = members(&sets.ensemble, sampling);
-    let timelines: Vec<Timeline> = (0..workers).map(|shift| night_blocks(days, shift)).collect();
+    let timelines: Vec<Timeline> = (0..workers)
+        .map(|shift| night_blocks(days, shift))
+        .collect();
     let warm = engine.warm_up(&members, &timelines[0].habits);
     let lane_days = workers * days * u32::try_from(members.len()).unwrap_or(0);
     lane_days_per_second(lane_days, || {

@@ -24,8 +24,8 @@ pub use ensemble::{Member, Sampling, members};
 pub use parameters::{ModelSets, PacemakerName};
 pub use track::{MemberTrack, SleepEpisode};
 
-use crate::numeric::quantile::{Quantiles, quantiles};
 use crate::numeric::instruction_set::InstructionSet;
+use crate::numeric::quantile::{Quantiles, quantiles};
 use crate::timeline::{Habits, Timeline};
 use crate::units::Minute;
 use cascade::{Cascade, Rows, SleepDebt};
@@ -37,7 +37,7 @@ use rayon::prelude::*;
 /// Distance of the points of the cortisol curve, minutes.
 const CURVE_STEP_MIN: i64 = 30;
 /// Step of the cascade and distance of its rows, minutes: cortisol differs from one-minute steps by less than 0.1 nmol/L.
-pub const CORTISOL_STEP_MIN: i64 = 2;
+pub const CORTISOL_STEP_MIN: i64 = 3;
 /// Rows are kept this long before the date that is read, minutes.
 const KEPT_BEFORE_MIN: i64 = 36 * 60;
 /// Rows are run this long past the date that is read, so that its quiescent interval ends.
@@ -205,7 +205,11 @@ impl Engine {
             run.advance(to, &mut rows);
             sample_to(to, tracks.len(), &rows, &mut samples);
             let stretch = Stretch::date(day.start, day.end);
-            days.push(reader.read(&rows, tracks.len(), stretch).unwrap_or_default());
+            days.push(
+                reader
+                    .read(&rows, tracks.len(), stretch)
+                    .unwrap_or_default(),
+            );
             rows.forget_before(day.end + -KEPT_BEFORE_MIN);
         }
         run.advance(timeline.end, &mut rows);

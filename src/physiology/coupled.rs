@@ -244,12 +244,18 @@ impl<'a> Person<'a> {
         }
     }
 
-    /// Falls asleep or wakes at `minute`, if that is planned or the alarm rings.
-    fn turn(&mut self, minute: i64, around: &Surroundings) -> bool {
-        let rung = self.sleeper.asleep() && !around.sleep_possible;
-        if !rung && self.planned != Some(minute) {
-            return false;
-        }
+    /// Looks for the next change of state from `from` on.
+    fn plan(&mut self, from: i64, around: &Surroundings) {
+        let sleep = &self.models.sleep;
+        let from = sleep.on_or_after(Minute(from).as_f64()).max(from);
+        let displacement_min = self.cbtmin_min - self.habitual.cbtmin_min;
+        self.planned = self
+            .sleeper
+            .next_change(sleep, from, around, displacement_min);
+    }
+
+    /// Falls asleep or wakes at `minute`; one change of state at a minute.
+    fn turn(&mut self, minute: i64, around: &Surroundings) {
         if self.sleeper.asleep() {
             self.end_sleep(minute, false);
         } else {
@@ -261,7 +267,7 @@ impl<'a> Person<'a> {
         }
         self.sleeper
             .turn(&self.models.sleep, minute, around.clock_shift_min);
-        true
+        self.plan(minute + 1, around);
     }
 
     fn end_sleep(&mut self, minute: i64, cut: bool) {
@@ -303,14 +309,15 @@ impl Life for Person<'_> {
             self.here += 1;
         }
         let around = self.surroundings();
-        let turned = self.turn(minute, &around);
-        // One change of state at a minute; the next is looked for from the next one.
-        let from = minute + i64::from(turned);
-        let from = self.models.sleep.on_or_after(Minute(from).as_f64()).max(from);
-        let displacement_min = self.cbtmin_min - self.habitual.cbtmin_min;
-        self.planned =
-            self.sleeper
-                .next_change(&self.models.sleep, from, &around, displacement_min);
+        let rung = self.sleeper.asleep() && !around.sleep_possible;
+        if rung || self.planned == Some(minute) {
+            self.turn(minute, &around);
+        } else {
+            self.plan(minute, &around);
+            if self.planned == Some(minute) {
+                self.turn(minute, &around);
+            }
+        }
         Scene {
             lux: self.lux() * self.member.sensitivity,
             asleep: self.sleeper.asleep(),

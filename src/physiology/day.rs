@@ -266,7 +266,11 @@ fn extreme(rows: &[[f64; LANES]], sign: f64) -> Extreme {
     for row in rows {
         for lane in 0..LANES {
             let better = sign * row[lane] > value[lane];
-            value[lane] = if better { sign * row[lane] } else { value[lane] };
+            value[lane] = if better {
+                sign * row[lane]
+            } else {
+                value[lane]
+            };
             at[lane] = if better { number } else { at[lane] };
         }
         number += 1.0;

@@ -15,14 +15,14 @@ mod marker;
 mod van_der_pol;
 
 pub use drive::UnitDrive;
-pub use kernel::{LastStep, Moved, PacemakerState};
+pub use kernel::{Moved, PacemakerState, Passing};
 pub use marker::MarkerReader;
 
 use super::parameters::{PacemakerReading, PacemakerSet};
 use crate::numeric::instruction_set::InstructionSet;
 use drive::{LightLaw, LightNumbers, Saturation};
-use kernel::Advance;
 use hannay::Hannay;
+use kernel::Advance;
 use van_der_pol::{Arousal, Form, Revised, Simple, VanDerPol};
 
 /// Members simulated side by side.
@@ -145,10 +145,10 @@ impl Pacemaker {
         }
     }
 
-    /// The same pacemaker with another longest step, minutes; for convergence tests.
+    /// The same pacemaker with a shorter longest step, minutes, at least 1; for convergence tests.
     pub fn with_longest_step(self, longest_step_min: i64) -> Self {
         Self {
-            longest_step_min: longest_step_min.max(1),
+            longest_step_min: longest_step_min.clamp(1, LONGEST_STEP_MIN),
             ..self
         }
     }
@@ -160,12 +160,7 @@ impl Pacemaker {
 
     /// The state from which habitual days are lived.
     pub fn start(&self) -> PacemakerState {
-        let [first, second, n] = self.reading.start;
-        PacemakerState {
-            first: [first; LANES],
-            second: [second; LANES],
-            n: [n; LANES],
-        }
+        PacemakerState::everywhere(self.reading.start)
     }
 
     /// Activation rate of the photoreceptors.
@@ -224,7 +219,8 @@ impl Pacemaker {
 
     /// Moves a unit under constant light and sleep: classical Runge-Kutta in steps of at most [`LONGEST_STEP_MIN`], the photoreceptors exactly.
     ///
-    /// Stops after `minutes`, or at the end of the step in which the first member passes its marker.
+    /// Goes from the minute `from` for `minutes`, or to the end of the step in which the first member passes its marker.
+    /// Steps end on whole multiples of their length, and where light or sleep change.
     ///
     /// # Equation
     ///
@@ -262,7 +258,7 @@ impl Pacemaker {
     /// let mut state = pacemaker.start();
     /// let dark = UnitDrive::dark(&pacemaker);
     /// let pace = [pacemaker.pace(24.2); LANES];
-    /// let moved = pacemaker.advance(&mut state, &dark, &pace, 60);
+    /// let moved = pacemaker.advance(&mut state, &dark, &pace, (0, 60));
     /// assert_eq!(moved.minutes, 60);
     /// // Photoreceptors recover in the dark: n = 0.3 exp(-60 * 0.007).
     /// assert!((state.n[0] - 0.3 * (-0.42_f64).exp()).abs() < 1e-12);
@@ -272,7 +268,7 @@ impl Pacemaker {
         state: &mut PacemakerState,
         drive: &UnitDrive,
         pace: &[f64; LANES],
-        minutes: i64,
+        (from, minutes): (i64, i64),
     ) -> Moved {
         // The model is chosen once, outside the loop over lanes.
         macro_rules! with {
@@ -282,6 +278,7 @@ impl Pacemaker {
                     state,
                     drive,
                     pace,
+                    from,
                     minutes,
                     longest_step: self.longest_step_min,
                 })

@@ -39,7 +39,7 @@ pub struct SleepModel {
 }
 
 /// Distance of the minutes at which members decide on sleep.
-pub const SLEEP_GRID_MIN: i64 = 2;
+pub const SLEEP_GRID_MIN: i64 = 1;
 
 impl SleepModel {
     /// The rules with the numbers of a parameter set.
@@ -247,9 +247,8 @@ impl Sleeper {
         around: &Surroundings,
         zero_min: f64,
     ) -> Option<i64> {
-        let mut minute = from.max(model.on_or_after(
-            Minute(self.changed_at + model.shortest_min).as_f64(),
-        ));
+        let mut minute =
+            from.max(model.on_or_after(Minute(self.changed_at + model.shortest_min).as_f64()));
         // Above this pressure no phase lets the person wake.
         let highest = self.lower + model.reach;
         let now = self.pressure_at(model, minute);

@@ -1,7 +1,9 @@
 //! One unit of members on the elapsed time axis: everybody moves on together, to the next edge of anybody's life.
 
 use super::ensemble::Member;
-use super::pacemaker::{LANES, MarkerReader, Moved, Pacemaker, PacemakerState, UnitDrive};
+use super::pacemaker::{
+    LANES, LONGEST_STEP_MIN, MarkerReader, Pacemaker, PacemakerState, UnitDrive,
+};
 use crate::units::Minute;
 
 /// What a life is like from a minute on.
@@ -38,6 +40,8 @@ pub struct Clocks<'a> {
     pacemaker: &'a Pacemaker,
     pace: [f64; LANES],
     readers: Vec<MarkerReader>,
+    /// Markers read and the minutes at which they are met.
+    coming: Vec<Option<(Marker, i64)>>,
     /// State of the pacemaker.
     pub state: PacemakerState,
 }
@@ -50,6 +54,7 @@ impl<'a> Clocks<'a> {
             pacemaker,
             pace,
             readers: vec![MarkerReader::new(); members.len()],
+            coming: vec![None; members.len()],
             state,
         }
     }
@@ -66,12 +71,20 @@ impl<'a> Clocks<'a> {
     /// Lets the lives go on from one minute to another.
     ///
     /// A step never straddles an edge of any life.
+    /// A life meets its marker at the first multiple of [`LONGEST_STEP_MIN`] after the angle was passed, whatever the length of the steps.
     pub fn live_through(&mut self, lives: &mut [impl Life], from: i64, to: i64) {
         let mut drive = UnitDrive::dark(self.pacemaker);
         let mut until = [i64::MIN; LANES];
         let mut now = from;
         while now < to {
             for (lane, life) in lives.iter_mut().enumerate() {
+                if let Some((marker, met_at)) = self.coming[lane]
+                    && met_at <= now
+                {
+                    self.coming[lane] = None;
+                    life.meet(marker);
+                    until[lane] = now;
+                }
                 if until[lane] <= now {
                     let scene = life.scene(now);
                     drive.set(self.pacemaker, lane, scene.lux, scene.asleep);
@@ -79,36 +92,38 @@ impl<'a> Clocks<'a> {
                 }
             }
             let edge = until[..lives.len()].iter().fold(to, |a, b| a.min(*b));
-            let moved =
-                self.pacemaker
-                    .advance(&mut self.state, &drive, &self.pace, edge.max(now + 1) - now);
+            let edge = self.coming.iter().flatten().fold(edge, |a, b| a.min(b.1));
+            let span = (now, edge.max(now + 1) - now);
+            let moved = self
+                .pacemaker
+                .advance(&mut self.state, &drive, &self.pace, span);
             now += moved.minutes;
-            self.read_markers(lives, &mut until, now, &moved);
+            if moved.passed {
+                self.read_markers(now);
+            }
         }
     }
 
-    fn read_markers(
-        &mut self,
-        lives: &mut [impl Life],
-        until: &mut [i64; LANES],
-        now: i64,
-        moved: &Moved,
-    ) {
-        let Some(last) = &moved.passed else { return };
+    fn read_markers(&mut self, now: i64) {
+        let passing = &self.state.last_passing;
         let step = (
-            Minute(now - last.minutes).as_f64(),
-            Minute(last.minutes).as_f64(),
+            Minute(now - passing.minutes).as_f64(),
+            Minute(passing.minutes).as_f64(),
         );
-        for (lane, life) in lives.iter_mut().enumerate() {
-            let before = (last.first[lane], last.second[lane]);
+        for (lane, reader) in self.readers.iter_mut().enumerate() {
+            if passing.lanes[lane] < 0.5 {
+                continue;
+            }
+            let before = (passing.first[lane], passing.second[lane]);
             let after = (self.state.first[lane], self.state.second[lane]);
-            let reader = &mut self.readers[lane];
-            if let Some(cbtmin_min) = reader.read(self.pacemaker, step, before, after) {
-                life.meet(Marker {
-                    cbtmin_min,
+            if let Some(reading) = reader.read(self.pacemaker, step, before, after) {
+                let marker = Marker {
+                    cbtmin_min: reading.cbtmin_min,
                     radius: self.pacemaker.radius(after),
-                });
-                until[lane] = now;
+                };
+                let multiple = Minute::from_which(reading.crossing_min).0;
+                let met_at = -(-multiple).div_euclid(LONGEST_STEP_MIN) * LONGEST_STEP_MIN;
+                self.coming[lane] = Some((marker, met_at.max(now)));
             }
         }
     }

@@ -38,7 +38,7 @@ pub(super) struct DriveReader<'a> {
     cycle: usize,
     /// Debt multiplier by cycle; empty when the term is off.
     debt: Vec<f64>,
-    /// Edges fall on these minutes, but for those of sleep.
+    /// A new `CBTmin` counts from the next multiple of this many minutes on: phase is continuous there.
     step_min: i64,
 }
 
@@ -117,7 +117,7 @@ impl<'a> DriveReader<'a> {
             let numbers = &self.cascade.debt;
             for edge in [numbers.from_min, numbers.to_min] {
                 let wait = (edge - phase) / phase_rate;
-                edge_at(self.step_from(Minute(minute).as_f64() + wait));
+                edge_at(Minute::from_which(Minute(minute).as_f64() + wait).0);
             }
             // A phase that reaches the edge within a millionth of a minute has reached it.
             if (numbers.from_min..numbers.to_min).contains(&(phase + 1e-6)) {

@@ -2,8 +2,8 @@
 
 use super::drive::DriveReader;
 use super::{Cascade, SleepDebt};
-use crate::physiology::pacemaker::LANES;
 use crate::numeric::instruction_set::Work;
+use crate::physiology::pacemaker::LANES;
 use crate::physiology::track::MemberTrack;
 use crate::units::Minute;
 
@@ -52,11 +52,14 @@ impl Rows {
         &self.rows
     }
 
-    /// Forgets the rows before `minute`.
+    /// Forgets the rows before `minute`, once they are two thirds of those held: moving the rest costs time.
     pub fn forget_before(&mut self, minute: Minute) {
         let Some(index) = self.index(minute) else {
             return;
         };
+        if index < 2 * (self.rows.len() - index) {
+            return;
+        }
         self.from = self.minute(index);
         self.rows.drain(..index);
     }
@@ -87,6 +90,8 @@ struct State {
 #[derive(Debug, Clone, Copy)]
 struct UnitScene {
     phase: [f64; LANES],
+    /// Circadian shape at that phase.
+    shape: [f64; LANES],
     phase_rate: [f64; LANES],
     gate: [f64; LANES],
     gate_decay: [f64; LANES],
@@ -116,6 +121,7 @@ impl<'a> CascadeRun<'a> {
             },
             scene: UnitScene {
                 phase: [0.0; LANES],
+                shape: [0.0; LANES],
                 phase_rate: [1.0; LANES],
                 gate: [0.0; LANES],
                 gate_decay: [1.0; LANES],
@@ -162,6 +168,7 @@ impl<'a> CascadeRun<'a> {
             if self.until[lane] <= self.now {
                 let scene = reader.scene(self.now);
                 self.scene.phase[lane] = scene.phase;
+                self.scene.shape[lane] = self.cascade.shape.at(scene.phase);
                 self.scene.phase_rate[lane] = scene.phase_rate;
                 self.scene.gate[lane] = scene.gate;
                 self.scene.gate_decay[lane] = scene.gate_decay;
@@ -209,42 +216,46 @@ fn step_lanes(cascade: &Cascade, state: &mut State, scene: &mut UnitScene, minut
     let length = Minute(minutes).as_f64();
     let half = length * 0.5;
     let sixth = length * (1.0 / 6.0);
-    let now = *state;
-    let drives = *scene;
-    let mut to = now;
-    let mut drives_to = drives;
-    let mut decay = [1.0; LANES];
-    for _ in 0..minutes {
+    let (crh, acth, cortisol) = (state.crh, state.acth, state.cortisol);
+    let (phase, shape, gate) = (scene.phase, scene.shape, scene.gate);
+    let (mut to_crh, mut to_acth, mut to_cortisol) = ([0.0; LANES], [0.0; LANES], [0.0; LANES]);
+    let (mut to_phase, mut to_shape, mut to_gate) = ([0.0; LANES], [0.0; LANES], [0.0; LANES]);
+    let mut decay = scene.gate_decay;
+    for _ in 1..minutes {
         for lane in 0..LANES {
-            decay[lane] *= drives.gate_decay[lane];
+            decay[lane] *= scene.gate_decay[lane];
         }
     }
     for lane in 0..LANES {
-        let phase = drives.phase[lane];
-        let middle_phase = phase + half * drives.phase_rate[lane];
-        let end_phase = phase + length * drives.phase_rate[lane];
-        let middle_gate = drives.gate[lane] * decay[lane];
+        let middle_phase = phase[lane] + half * scene.phase_rate[lane];
+        let end_phase = phase[lane] + length * scene.phase_rate[lane];
+        let middle_gate = gate[lane] * decay[lane];
         let end_gate = middle_gate * decay[lane];
-        let drive = |phase: f64, gate: f64| {
-            (cascade.shape.at(phase) * (1.0 - gate) + drives.pulse[lane]) * drives.factor[lane]
-        };
-        let start = drive(phase, drives.gate[lane]);
-        let middle = drive(middle_phase, middle_gate);
-        let end = drive(end_phase, end_gate);
-        let x = [now.crh[lane], now.acth[lane], now.cortisol[lane]];
+        let end_shape = cascade.shape.at(end_phase);
+        let drive =
+            |shape: f64, gate: f64| (shape * (1.0 - gate) + scene.pulse[lane]) * scene.factor[lane];
+        let start = drive(shape[lane], gate[lane]);
+        let middle = drive(cascade.shape.at(middle_phase), middle_gate);
+        let end = drive(end_shape, end_gate);
+        let x = [crh[lane], acth[lane], cortisol[lane]];
         let a = cascade.rate(x, start);
         let b = cascade.rate(moved(x, a, half), middle);
         let c = cascade.rate(moved(x, b, half), middle);
         let d = cascade.rate(moved(x, c, length), end);
         let sum = |i: usize| x[i] + sixth * ((a[i] + d[i]) + 2.0 * (b[i] + c[i]));
-        to.crh[lane] = sum(0);
-        to.acth[lane] = sum(1);
-        to.cortisol[lane] = sum(2);
-        drives_to.phase[lane] = end_phase;
-        drives_to.gate[lane] = end_gate;
+        to_crh[lane] = sum(0);
+        to_acth[lane] = sum(1);
+        to_cortisol[lane] = sum(2);
+        to_phase[lane] = end_phase;
+        to_shape[lane] = end_shape;
+        to_gate[lane] = end_gate;
     }
-    *state = to;
-    *scene = drives_to;
+    state.crh = to_crh;
+    state.acth = to_acth;
+    state.cortisol = to_cortisol;
+    scene.phase = to_phase;
+    scene.shape = to_shape;
+    scene.gate = to_gate;
 }
 
 #[inline(always)]

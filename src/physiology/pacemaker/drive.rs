@@ -1,6 +1,6 @@
 //! Light and sleep as they act on the members of a unit between two edges of their lives.
 
-use super::{LANES, Pacemaker};
+use super::{LANES, LONGEST_STEP_MIN, Pacemaker};
 use crate::units::Sourced;
 
 /// Activation of the photoreceptors by light.
@@ -79,20 +79,33 @@ pub struct UnitDrive {
     pub(super) gain_alpha: [f64; LANES],
     /// `n'`, the steady share of activated photoreceptors.
     pub(super) steady: [f64; LANES],
-    /// `e^(-(alpha + beta) / 2)`: what half a minute leaves of the distance from it.
-    pub(super) decay: [f64; LANES],
+    /// What half a step and a whole step of 1, 2, ... minutes leave of the distance from it: `e^(-(alpha + beta) t)`.
+    left: [[[f64; LANES]; 2]; STEPS],
     /// `rho (1/3 - sigma)`.
     pub(super) arousal: [f64; LANES],
     lux: [f64; LANES],
 }
 
+/// Lengths of step for which the photoreceptors are prepared: 1 to this many minutes.
+const STEPS: usize = 6;
+// The longest step of the integration is prepared.
+const _: () = assert!(STEPS as i64 == LONGEST_STEP_MIN);
+
 impl UnitDrive {
+    /// What half a step and a whole step leave of the distance of `n` from its steady share.
+    #[inline(always)]
+    pub(super) fn left_after(&self, minutes: i64) -> (&[f64; LANES], &[f64; LANES]) {
+        let index = usize::try_from(minutes - 1).unwrap_or(0).min(STEPS - 1);
+        let [half, whole] = &self.left[index];
+        (half, whole)
+    }
+
     /// Darkness and waking for every member.
     pub fn dark(pacemaker: &Pacemaker) -> Self {
         let mut drive = Self {
             gain_alpha: [0.0; LANES],
             steady: [0.0; LANES],
-            decay: [0.0; LANES],
+            left: [[[0.0; LANES]; 2]; STEPS],
             arousal: [0.0; LANES],
             lux: [f64::NAN; LANES],
         };
@@ -111,7 +124,13 @@ impl UnitDrive {
             self.lux[lane] = lux;
             self.gain_alpha[lane] = law.gain * alpha;
             self.steady[lane] = alpha / rate;
-            self.decay[lane] = libm::exp(-rate / 2.0);
+            let half_minute = libm::exp(-rate / 2.0);
+            let mut half = 1.0;
+            for [of_half, of_whole] in &mut self.left {
+                half *= half_minute;
+                of_half[lane] = half;
+                of_whole[lane] = half * half;
+            }
         }
         self.arousal[lane] = pacemaker.arousal(asleep);
     }

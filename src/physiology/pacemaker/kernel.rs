@@ -16,6 +16,38 @@ pub struct PacemakerState {
     pub second: [f64; LANES],
     /// Share of activated photoreceptors.
     pub n: [f64; LANES],
+    /// The step in which a marker was last passed.
+    pub last_passing: Passing,
+}
+
+/// The step in which at least one lane passed its marker.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Passing {
+    /// Its length, minutes.
+    pub minutes: i64,
+    /// First variable before the step.
+    pub first: [f64; LANES],
+    /// Second variable before the step.
+    pub second: [f64; LANES],
+    /// 1 in the lanes that passed, else 0.
+    pub lanes: [f64; LANES],
+}
+
+impl PacemakerState {
+    /// The same state in every lane.
+    pub fn everywhere([first, second, n]: [f64; 3]) -> Self {
+        Self {
+            first: [first; LANES],
+            second: [second; LANES],
+            n: [n; LANES],
+            last_passing: Passing {
+                minutes: 0,
+                first: [first; LANES],
+                second: [second; LANES],
+                lanes: [0.0; LANES],
+            },
+        }
+    }
 }
 
 /// What drives one lane in one step.
@@ -59,31 +91,21 @@ pub(super) fn runge_kutta(
 }
 
 /// How far a unit was moved.
-#[derive(Debug, Clone, PartialEq)]
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub struct Moved {
     /// Minutes moved; fewer than asked when a marker was passed on the way.
     pub minutes: i64,
-    /// The last step, where at least one lane passed its marker in it.
-    pub passed: Option<LastStep>,
+    /// Did at least one lane pass its marker in the last step? The state tells more.
+    pub passed: bool,
 }
 
-/// The step in which a marker was passed.
-#[derive(Debug, Clone, PartialEq)]
-pub struct LastStep {
-    /// Its length, minutes.
-    pub minutes: i64,
-    /// First variable before the step.
-    pub first: [f64; LANES],
-    /// Second variable before the step.
-    pub second: [f64; LANES],
-}
-
-/// A unit to be moved by `minutes`, or to the end of the step in which the first marker is passed.
+/// A unit to be moved by `minutes` from the minute `from`, or to the end of the step in which the first marker is passed.
 pub(super) struct Advance<'a, O> {
     pub(super) oscillator: O,
     pub(super) state: &'a mut PacemakerState,
     pub(super) drive: &'a UnitDrive,
     pub(super) pace: &'a [f64; LANES],
+    pub(super) from: i64,
     pub(super) minutes: i64,
     pub(super) longest_step: i64,
 }
@@ -93,63 +115,16 @@ impl<O: Oscillator> Work for Advance<'_, O> {
 
     #[inline(always)]
     fn done(self) -> Moved {
-        let mut done = 0;
-        let mut ready = Ready::of(self.drive, 0);
-        while done < self.minutes {
-            let step = (self.minutes - done).min(self.longest_step);
-            if step != ready.minutes {
-                ready = Ready::of(self.drive, step);
-            }
-            let before = (self.state.first, self.state.second);
-            let passed = step_lanes(self.oscillator, self.state, &ready, self.pace);
-            done += step;
-            if passed {
-                return Moved {
-                    minutes: done,
-                    passed: Some(LastStep {
-                        minutes: step,
-                        first: before.0,
-                        second: before.1,
-                    }),
-                };
-            }
+        let mut minutes = 0;
+        let mut passed = false;
+        while minutes < self.minutes && !passed {
+            let to_multiple =
+                self.longest_step - (self.from + minutes).rem_euclid(self.longest_step);
+            let step = (self.minutes - minutes).min(to_multiple);
+            passed = step_lanes(self.oscillator, self.state, self.drive, self.pace, step);
+            minutes += step;
         }
-        Moved {
-            minutes: done,
-            passed: None,
-        }
-    }
-}
-
-/// Constants of a step of a given length under constant light.
-struct Ready<'a> {
-    minutes: i64,
-    step_h: f64,
-    drive: &'a UnitDrive,
-    half: [f64; LANES],
-    whole: [f64; LANES],
-}
-
-impl<'a> Ready<'a> {
-    #[inline(always)]
-    fn of(drive: &'a UnitDrive, minutes: i64) -> Self {
-        let mut half = [1.0; LANES];
-        for _ in 0..minutes {
-            for lane in 0..LANES {
-                half[lane] *= drive.decay[lane];
-            }
-        }
-        let mut whole = half;
-        for lane in 0..LANES {
-            whole[lane] *= half[lane];
-        }
-        Self {
-            minutes,
-            step_h: crate::units::minutes_to_hours(minutes),
-            drive,
-            half,
-            whole,
-        }
+        Moved { minutes, passed }
     }
 }
 
@@ -158,18 +133,20 @@ impl<'a> Ready<'a> {
 fn step_lanes(
     oscillator: impl Oscillator,
     state: &mut PacemakerState,
-    ready: &Ready<'_>,
+    drive: &UnitDrive,
     pace: &[f64; LANES],
+    minutes: i64,
 ) -> bool {
     let (first, second, n) = (state.first, state.second, state.n);
     let (mut to_first, mut to_second, mut to_n) = ([0.0; LANES], [0.0; LANES], [0.0; LANES]);
     let mut passed = [0.0; LANES];
-    let drive = ready.drive;
+    let step_h = crate::units::minutes_to_hours(minutes);
+    let (half, whole) = drive.left_after(minutes);
     for lane in 0..LANES {
         // The photoreceptors relax towards their steady share: exact, whatever the step.
         let away = n[lane] - drive.steady[lane];
-        let middle = drive.steady[lane] + away * ready.half[lane];
-        let end = drive.steady[lane] + away * ready.whole[lane];
+        let middle = drive.steady[lane] + away * half[lane];
+        let end = drive.steady[lane] + away * whole[lane];
         let gain = drive.gain_alpha[lane];
         let input = LaneInput {
             drive: [
@@ -181,7 +158,7 @@ fn step_lanes(
             pace: pace[lane],
         };
         let before = [first[lane], second[lane]];
-        let after = oscillator.step(before, input, ready.step_h);
+        let after = oscillator.step(before, input, step_h);
         to_first[lane] = after[0];
         to_second[lane] = after[1];
         to_n[lane] = end;
@@ -194,5 +171,14 @@ fn step_lanes(
     state.first = to_first;
     state.second = to_second;
     state.n = to_n;
-    passed.iter().sum::<f64>() > 0.0
+    let any = passed.iter().sum::<f64>() > 0.0;
+    if any {
+        state.last_passing = Passing {
+            minutes,
+            first,
+            second,
+            lanes: passed,
+        };
+    }
+    any
 }

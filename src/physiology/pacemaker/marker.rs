@@ -5,6 +5,15 @@ use super::Pacemaker;
 /// Minutes after which a second passing of the marker angle is believed: one marker per cycle, never two.
 const SHORTEST_CYCLE_MIN: f64 = 12.0 * 60.0;
 
+/// A marker, minutes since the epoch.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Reading {
+    /// When the angle was passed.
+    pub crossing_min: f64,
+    /// The `CBTmin` that this announces.
+    pub cbtmin_min: f64,
+}
+
 /// Finds `CBTmin` of one member as its state moves on.
 #[derive(Debug, Clone, PartialEq)]
 pub struct MarkerReader {
@@ -26,20 +35,23 @@ impl MarkerReader {
         }
     }
 
-    /// `CBTmin` in minutes since the epoch, if the step of `length_min` from `minute` held the crossing that announces it.
+    /// The marker, if the step of `length_min` from `minute` held the crossing that announces it.
     pub fn read(
         &mut self,
         pacemaker: &Pacemaker,
         (minute, length_min): (f64, f64),
         before: (f64, f64),
         after: (f64, f64),
-    ) -> Option<f64> {
+    ) -> Option<Reading> {
         let crossing = minute + length_min * pacemaker.crossing(before, after)?;
         if crossing - self.last_crossing_min <= SHORTEST_CYCLE_MIN {
             return None;
         }
         self.last_crossing_min = crossing;
-        Some(crossing + pacemaker.reading.cbtmin_offset_min)
+        Some(Reading {
+            crossing_min: crossing,
+            cbtmin_min: crossing + pacemaker.reading.cbtmin_offset_min,
+        })
     }
 }
 

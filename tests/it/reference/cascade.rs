@@ -3,8 +3,8 @@
 //! Source: reference values of the recommended cortisol model (`reference_values.json`, Python prototype, classical Runge-Kutta, 1 min),
 //! with the gate of the biological night for S2, S4 and S6. Tolerance stated there: 1 nmol/L and 3 min.
 
-use acroshift::physiology::cascade::{Cascade, SleepDebt};
 use acroshift::physiology::cascade::Rows;
+use acroshift::physiology::cascade::{Cascade, SleepDebt};
 use acroshift::physiology::day::{DayReader, Stretch};
 use acroshift::physiology::{CortisolDay, Member, MemberTrack, ModelSets, SleepEpisode};
 use acroshift::units::Minute;
@@ -220,7 +220,7 @@ fn a_fully_adapted_worker_is_a_day_worker_nine_hours_later() {
         cbtmin: Box::new(|_| 780.0),
         pulse: true,
         debt: SleepDebt::Off,
-            step_min: 1,
+        step_min: 1,
     };
     let found = day(&scenario.run(7), 5 * DAY);
     check(
@@ -280,7 +280,7 @@ fn five_nights_with_a_moving_clock_agree_with_the_reference() {
         cbtmin: Box::new(cbtmin),
         pulse: true,
         debt: SleepDebt::Off,
-            step_min: 1,
+        step_min: 1,
     };
     let values = scenario.run(10);
     let expected = [

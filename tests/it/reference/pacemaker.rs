@@ -3,9 +3,7 @@
 //! Source: reference runs with `SciPy` 1.17.1 `solve_ivp` DOP853, rtol 1e-10, restarted at every edge of light and sleep.
 //! Tolerances: state 1e-5 (one-minute Runge-Kutta against rtol 1e-10), markers 0.001 h, as the reference page suggests.
 
-use acroshift::physiology::pacemaker::{
-    LANES, MarkerReader, Pacemaker, PacemakerState, UnitDrive,
-};
+use acroshift::physiology::pacemaker::{LANES, MarkerReader, Pacemaker, PacemakerState, UnitDrive};
 use acroshift::physiology::{ModelSets, PacemakerName};
 
 const STATE_TOLERANCE: f64 = 1e-5;
@@ -149,19 +147,24 @@ impl Run {
             // States are read every hour.
             let next = end.min((self.minute / 60 + 1) * 60);
             let left = i64::from(next - self.minute);
-            let moved = self
-                .pacemaker
-                .advance(&mut self.state, &drive, &self.pace, left);
+            let moved = self.pacemaker.advance(
+                &mut self.state,
+                &drive,
+                &self.pace,
+                (i64::from(self.minute), left),
+            );
             self.minute += u32::try_from(moved.minutes).unwrap();
             let after = self.now();
-            if let Some(last) = moved.passed {
+            if moved.passed {
+                let last = &self.state.last_passing;
                 let length = u32::try_from(last.minutes).unwrap();
                 let step = (f64::from(self.minute - length), f64::from(length));
                 let before = (last.first[0], last.second[0]);
                 let read = self
                     .reader
                     .read(&self.pacemaker, step, before, (after[0], after[1]));
-                self.cbtmin_h.extend(read.map(|cbtmin| cbtmin / 60.0));
+                self.cbtmin_h
+                    .extend(read.map(|reading| reading.cbtmin_min / 60.0));
             }
             if self.minute.is_multiple_of(60) {
                 self.hourly.push(after);

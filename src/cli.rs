@@ -4,6 +4,7 @@ mod arguments;
 mod explain;
 mod output;
 mod screen;
+mod validate;
 
 use arguments::{Arguments, Command};
 use clap::Parser;
@@ -73,6 +74,7 @@ pub(crate) fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
     };
     let result = match &arguments.command {
         Command::Screen(options) => screen::run(options),
+        Command::Validate(options) => validate::run(options),
         Command::Explain(options) => explain::run(options),
     };
     match result {

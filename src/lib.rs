@@ -27,6 +27,8 @@ pub mod timeline;
 
 pub mod physiology;
 
+pub mod validation;
+
 pub mod assessment;
 
 pub mod report;

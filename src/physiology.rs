@@ -181,6 +181,26 @@ impl Engine {
             .collect()
     }
 
+    /// Cortisol of a lived line is known from this minute on; its start is forgotten at the entry.
+    pub const CORTISOL_FROM: Minute = CASCADE_FROM;
+
+    /// The pacemaker.
+    pub fn pacemaker(&self) -> &pacemaker::Pacemaker {
+        &self.coupled.pacemaker
+    }
+
+    /// Habitual days lived before anything else.
+    pub fn habitual_days(&self) -> i64 {
+        self.coupled.habitual_days
+    }
+
+    /// Sleep and phase of the units on one duty line, without cortisol.
+    pub fn tracks(&self, warm: &[WarmUnit], timeline: &Timeline) -> Vec<MemberTrack> {
+        warm.iter()
+            .flat_map(|unit| coupled::live(&self.coupled, unit, timeline))
+            .collect()
+    }
+
     /// Lets the units live one duty line.
     pub fn live(&self, warm: &[WarmUnit], timeline: &Timeline) -> Simulation {
         let parts = warm

@@ -11,3 +11,4 @@ pub mod json;
 pub mod parquet;
 pub mod svg;
 pub mod terminal;
+pub mod validation;

@@ -1,5 +1,6 @@
 //! What was typed.
 
+use acroshift::physiology::PacemakerName;
 use chrono::NaiveDate;
 use clap::{Args, Parser, Subcommand, ValueEnum};
 use std::path::PathBuf;
@@ -8,6 +9,9 @@ const EXAMPLE: &str = "Example, on the demo roster:
   acroshift screen rosters/tern-quay-ward.csv --rules uk-wtr,adv-nordic,adv-review,adv-hse --out output/ward
 
 Exit codes: 0 done; 1 findings at or above --fail-on; 2 wrong usage; 3 input errors; 4 the computer refused.";
+
+const VALIDATE_EXAMPLE: &str = "Example, the table of VALIDATION.md:
+  acroshift validate --format markdown";
 
 const EXPLAIN_EXAMPLE: &str = "Example, a rule that the demo roster does not meet:
   acroshift explain uk-daily-rest";
@@ -27,6 +31,9 @@ pub(crate) enum Command {
     /// Screen rosters: which recovery windows are compressed, and why.
     #[command(after_help = EXAMPLE)]
     Screen(ScreenOptions),
+    /// Run published experiments through the models: observed against modelled, misses included.
+    #[command(after_help = VALIDATE_EXAMPLE)]
+    Validate(ValidateOptions),
     /// Explain a code: a problem of the input, a finding, a rule or a rule pack.
     #[command(after_help = EXPLAIN_EXAMPLE)]
     Explain(ExplainOptions),
@@ -38,6 +45,45 @@ pub(crate) struct ExplainOptions {
     /// A code as the program prints it: T21, compressed-rest, uk-daily-rest, uk-wtr.
     #[arg(value_name = "CODE")]
     pub(crate) code: String,
+}
+
+/// Options of `validate`.
+#[derive(Debug, Args)]
+pub(crate) struct ValidateOptions {
+    /// Experiments of your own, in the format of src/validation/experiments.toml [default: those of the program].
+    #[arg(long, value_name = "FILE.toml")]
+    pub(crate) experiments: Option<PathBuf>,
+
+    /// Only this model of the body clock [default: all four, the first one scored].
+    #[arg(long, value_enum, value_name = "NAME")]
+    pub(crate) pacemaker: Option<PacemakerOption>,
+
+    /// Simulated people; rounded up to a multiple of 8.
+    #[arg(long, value_name = "N", default_value_t = 32, value_parser = clap::value_parser!(u16).range(1..=4096))]
+    pub(crate) members: u16,
+
+    /// Seed of the simulated people.
+    #[arg(long, value_name = "N", default_value_t = 1)]
+    pub(crate) seed: u64,
+
+    /// What is printed on standard output.
+    #[arg(long, value_enum, default_value_t = TableFormat::Text)]
+    pub(crate) format: TableFormat,
+}
+
+/// What is printed on standard output.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, ValueEnum)]
+pub(crate) enum TableFormat {
+    /// Lines for the terminal.
+    Text,
+    /// A table for documents.
+    Markdown,
+    /// Schema acroshift.validate/1.
+    Json,
+    /// One row per outcome and pacemaker.
+    Csv,
+    /// A page of its own.
+    Html,
 }
 
 /// Options of `screen`.
@@ -134,6 +180,18 @@ pub(crate) enum PacemakerOption {
     /// Light drive, macroscopic; read its shifts, its clock times stand early.
     #[value(name = "hannay2019")]
     Hannay2019,
+}
+
+impl PacemakerOption {
+    /// The pacemaker meant.
+    pub(crate) fn name(self) -> PacemakerName {
+        match self {
+            Self::Hilaire2007 => PacemakerName::Hilaire2007,
+            Self::Forger1999 => PacemakerName::Forger1999,
+            Self::Jewett1999 => PacemakerName::Jewett1999,
+            Self::Hannay2019 => PacemakerName::Hannay2019,
+        }
+    }
 }
 
 /// What is printed on standard output.

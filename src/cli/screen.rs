@@ -1,12 +1,11 @@
 //! `acroshift screen`: files to a report.
 
-use super::arguments::{AudienceName, Format, Level, PacemakerOption, ScreenOptions};
+use super::arguments::{AudienceName, Format, Level, ScreenOptions};
 use super::{Ending, Stop, output};
 use acroshift::assessment::{Attention, Pack, pack};
 use acroshift::diagnostic::{Code, Diagnostic, has_errors};
 use acroshift::intake::site::Site;
 use acroshift::intake::{self, Input, Intake, Reading, site, zone_name};
-use acroshift::physiology::PacemakerName;
 use acroshift::render::{json, terminal};
 use acroshift::report::{Audience, ScreenReport, diagnostics};
 use acroshift::source::Origin;
@@ -53,12 +52,7 @@ pub(super) fn run(options: &ScreenOptions) -> Result<Ending, Stop> {
         site,
         members: usize::from(options.members),
         seed: options.seed,
-        pacemaker: match options.pacemaker {
-            PacemakerOption::Hilaire2007 => PacemakerName::Hilaire2007,
-            PacemakerOption::Forger1999 => PacemakerName::Forger1999,
-            PacemakerOption::Jewett1999 => PacemakerName::Jewett1999,
-            PacemakerOption::Hannay2019 => PacemakerName::Hannay2019,
-        },
+        pacemaker: options.pacemaker.name(),
     };
     let usable = read.roster.as_ref().filter(|_| !unusable);
     let report = usable.and_then(|roster| screen(roster, &read.diagnostics, &hashes, &screening));

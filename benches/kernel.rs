@@ -6,7 +6,7 @@
 //! Run with `cargo bench --bench kernel`.
 
 use acroshift::numeric::instruction_set::InstructionSet;
-use acroshift::physiology::pacemaker::{LANES, Pacemaker, UnitDrive};
+use acroshift::physiology::pacemaker::{LANES, MarkerReader, Pacemaker, UnitDrive};
 use acroshift::physiology::{
     Engine, Member, ModelSets, PacemakerName, Sampling, Simulation, members,
 };
@@ -29,9 +29,10 @@ fn main() {
         ] {
             let sets = ModelSets::with_pacemaker(name);
             let pacemaker = Pacemaker::on(set, &sets.pacemaker);
-            let rate = lane_days_per_second(80 * 16, || pacemaker_days(&pacemaker, 80));
+            let mut last = 0.0;
+            let rate = lane_days_per_second(80 * 16, || last = pacemaker_days(&pacemaker, 80));
             println!(
-                "{:>9} {:<12} {rate:>10.0} lane-days/s",
+                "{:>9} {:<12} {rate:>10.0} lane-days/s   last CBTmin {last:.6} h",
                 set.name(),
                 name.word()
             );
@@ -70,8 +71,8 @@ fn lane_days_per_second(lane_days: u32, mut run: impl FnMut()) -> f64 {
     f64::from(lane_days) / best
 }
 
-/// Ten changes of light a day, from darkness to 1000 lux.
-fn pacemaker_days(pacemaker: &Pacemaker, days: u32) {
+/// Ten changes of light a day, from darkness to 1000 lux; gives the last `CBTmin`, hours.
+fn pacemaker_days(pacemaker: &Pacemaker, days: u32) -> f64 {
     let blocks = [
         (420, 0.0, true),
         (60, 40.0, false),
@@ -87,17 +88,32 @@ fn pacemaker_days(pacemaker: &Pacemaker, days: u32) {
     let mut state = pacemaker.start();
     let pace = [pacemaker.pace(24.15); LANES];
     let mut drive = UnitDrive::dark(pacemaker);
+    let mut reader = MarkerReader::new();
+    let mut last = 0.0;
+    let mut now = 0;
     for _ in 0..days {
         for (minutes, lux, asleep) in blocks {
             (0..LANES).for_each(|lane| drive.set(pacemaker, lane, lux, asleep));
             let mut left = minutes;
             while left > 0 {
-                let span = (minutes - left, left);
-                left -= pacemaker.advance(&mut state, &drive, &pace, span).minutes;
+                let moved = pacemaker.advance(&mut state, &drive, &pace, (now, left));
+                left -= moved.minutes;
+                now += moved.minutes;
+                if moved.passed {
+                    let passing = &state.last_passing;
+                    let length = Minute(passing.minutes).as_f64();
+                    let step = (Minute(now).as_f64() - length, length);
+                    let before = (passing.first[0], passing.second[0]);
+                    let after = (state.first[0], state.second[0]);
+                    if let Some(reading) = reader.read(pacemaker, step, before, after) {
+                        last = reading.cbtmin_min / 60.0;
+                    }
+                }
             }
         }
     }
     black_box(&state);
+    last
 }
 
 fn physiology_rate(set: InstructionSet, workers: u32, days: u32, size: usize) -> f64 {

@@ -15,7 +15,7 @@ pub use experiment::{ExperimentError, Experiments, NotRun};
 pub use outcome::{Held, Modelled, Row};
 
 use crate::physiology::{ModelSets, PacemakerName, Sampling};
-use crate::timeline::HabitFile;
+use crate::timeline::{HabitFile, Habits};
 use experiment::Experiment;
 use rayon::prelude::*;
 
@@ -114,21 +114,42 @@ impl ValidationReport {
 
 fn rows(experiment: &Experiment, validation: &Validation) -> Vec<Row> {
     let habits = HabitFile::embedded().habits();
-    let by_pacemaker: Vec<_> = validation
+    let models: Vec<Models> = validation
         .pacemakers
         .iter()
-        .map(|name| {
-            let sets = ModelSets::with_pacemaker(*name);
+        .map(|name| Models {
+            name: *name,
+            sets: ModelSets::with_pacemaker(*name),
+            habits,
+        })
+        .collect();
+    rows_of(experiment, &models, validation.members, validation.seed)
+}
+
+/// The numbers with which an experiment is run.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Models {
+    /// The pacemaker's name.
+    pub name: PacemakerName,
+    /// Parameter sets.
+    pub sets: ModelSets,
+    /// Time around duty.
+    pub habits: Habits,
+}
+
+/// One experiment on models of one's choice, as the fit of the sleep rules needs it.
+pub fn rows_of(experiment: &Experiment, models: &[Models], members: usize, seed: u64) -> Vec<Row> {
+    let by_pacemaker: Vec<_> = models
+        .iter()
+        .map(|model| {
             let sampling = Sampling {
-                members: validation.members,
-                seed: validation.seed,
-                commute_min: habits.commute_h * 60.0,
+                members,
+                seed,
+                commute_min: model.habits.commute_h * 60.0,
                 morning_daylight: None,
             };
-            (
-                *name,
-                lives::quantities(experiment, &sets, sampling, habits),
-            )
+            let quantities = lives::quantities(experiment, &model.sets, sampling, model.habits);
+            (model.name, quantities)
         })
         .collect();
     experiment

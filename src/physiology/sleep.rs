@@ -384,8 +384,9 @@ mod tests {
 
     #[test]
     fn thresholds_of_the_mean_member_agree_with_the_reference() {
-        // Reference cases of the sleep mechanism: H0 0.629785, L0 0.156991.
-        let sets = ModelSets::embedded();
+        // Reference cases of the sleep mechanism, computed with amplitude 0.065: H0 0.629785, L0 0.156991.
+        let mut sets = ModelSets::embedded();
+        sets.sleep.process_c.amplitude.value = 0.065;
         let model = SleepModel::new(&sets.sleep);
         let sleeper = Sleeper::habitual(&model, &Member::mean(&sets.ensemble, 30.0), -720);
         assert!((sleeper.upper - 0.629785).abs() < 1e-6);

@@ -27,6 +27,10 @@ fn allowed() -> BTreeMap<&'static str, &'static [&'static str]> {
         ("timeline", &["roster", "numeric", "units"][..]),
         ("physiology", &["timeline", "numeric", "units"][..]),
         (
+            "validation",
+            &["timeline", "physiology", "numeric", "units"][..],
+        ),
+        (
             "assessment",
             &[
                 "roster",
@@ -51,7 +55,7 @@ fn allowed() -> BTreeMap<&'static str, &'static [&'static str]> {
                 "units",
             ][..],
         ),
-        ("render", &["report", "units"][..]),
+        ("render", &["report", "validation", "units"][..]),
     ])
 }
 

@@ -19,5 +19,6 @@ mod reference;
 mod rosters;
 mod rules;
 mod scratch;
+mod validation;
 #[cfg(feature = "xlsx")]
 mod workbook;

@@ -1,6 +1,7 @@
 //! Published and independently computed numbers, each with its source and tolerance.
 
 mod cascade;
+mod entrainment;
 mod kernel;
 mod pacemaker;
 mod sleep;

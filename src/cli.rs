@@ -3,6 +3,7 @@
 mod arguments;
 mod explain;
 mod output;
+mod parameters;
 mod screen;
 mod validate;
 

@@ -38,6 +38,7 @@ pub mod render;
 use assessment::{AssessmentInput, Criteria, Pack};
 use intake::site::Site;
 use physiology::{ModelSets, PacemakerName, Sampling};
+use report::pacemakers::Beside;
 use report::{Audience, ReportInput, RunFacts, ScreenReport};
 use roster::Roster;
 use timeline::{Axis, HabitFile, SiteScene, Timeline};
@@ -56,8 +57,10 @@ pub struct Screening {
     pub members: usize,
     /// Seed of the ensemble.
     pub seed: u64,
-    /// Pacemaker.
-    pub pacemaker: PacemakerName,
+    /// Pacemaker and every other parameter set.
+    pub sets: ModelSets,
+    /// Pacemakers whose phase is shown beside it.
+    pub beside: Vec<PacemakerName>,
 }
 
 /// Names and SHA-256 of the input files, in the order in which they were read.
@@ -70,7 +73,7 @@ pub type InputHashes = [(String, String)];
 /// # Example
 ///
 /// ```
-/// use acroshift::{Screening, assessment::pack, intake, physiology::PacemakerName, report::Audience, screen};
+/// use acroshift::{Screening, assessment::pack, intake, physiology::ModelSets, report::Audience, screen};
 ///
 /// let csv = b"worker,start,end\nA1,2026-03-09T14:00,2026-03-09T22:00\nA1,2026-03-10T06:00,2026-03-10T14:00\n";
 /// let reading = intake::Reading { zone: Some(chrono_tz::Europe::London), ..intake::Reading::default() };
@@ -81,7 +84,8 @@ pub type InputHashes = [(String, String)];
 ///     site: intake::site::Site::default(),
 ///     members: 8,
 ///     seed: 1,
-///     pacemaker: PacemakerName::Hilaire2007,
+///     sets: ModelSets::embedded(),
+///     beside: Vec::new(),
 /// };
 /// let roster = read.roster.expect("the file is in order");
 /// let report = screen(&roster, &read.diagnostics, &[], &screening).expect("there are shifts");
@@ -96,7 +100,7 @@ pub fn screen(
     screening: &Screening,
 ) -> Option<ScreenReport> {
     let habit_file = HabitFile::embedded();
-    let sets = ModelSets::with_pacemaker(screening.pacemaker);
+    let sets = &screening.sets;
     let criteria = Criteria::embedded();
 
     // A commute is the worker's own: the planner's generic adult does not have it.
@@ -108,7 +112,7 @@ pub fn screen(
 
     // Civil time becomes elapsed time.
     let scene = SiteScene {
-        work_light: work_light(screening.site.task_light, &sets),
+        work_light: work_light(screening.site.task_light, sets),
         place: screening.site.place,
         habits: habit_file.habits(),
     };
@@ -130,7 +134,8 @@ pub fn screen(
         morning_daylight: screening.site.morning_daylight,
     };
     let members = physiology::members(&sets.ensemble, sampling);
-    let simulations = physiology::simulate(&timelines, &members, &sets);
+    let simulations = physiology::simulate(&timelines, &members, sets);
+    let beside = lived_beside(screening, &timelines, &members);
 
     // Law, advice and model are held against the windows, side by side.
     let assessment = assessment::assess(&AssessmentInput {
@@ -153,7 +158,8 @@ pub fn screen(
         assessment: &assessment,
         packs: &screening.packs,
         criteria: &criteria,
-        sets: &sets,
+        sets,
+        beside: &beside,
         habits: &habit_file,
         diagnostics,
         inputs,
@@ -166,6 +172,22 @@ pub fn screen(
             place: screening.site.place,
         },
     }))
+}
+
+/// The same lines lived on the other pacemakers asked for.
+fn lived_beside(
+    screening: &Screening,
+    timelines: &[Timeline],
+    members: &[physiology::Member],
+) -> Vec<Beside> {
+    screening
+        .beside
+        .iter()
+        .map(|pacemaker| Beside {
+            pacemaker: *pacemaker,
+            tracks: physiology::tracks(timelines, members, &screening.sets.on(*pacemaker)),
+        })
+        .collect()
 }
 
 /// Light at the eye on duty from the light on the task.

@@ -80,6 +80,8 @@ pub struct Simulation {
     pub curve: Vec<CurveSample>,
     /// Where melatonin stands against `CBTmin`.
     pub melatonin: MelatoninMarkers,
+    /// Share of the habitual amplitude below which phase is ill-defined.
+    pub amplitude_floor: f64,
 }
 
 /// Markers derived from `CBTmin`; never a second result.
@@ -126,6 +128,23 @@ pub fn simulate(timelines: &[Timeline], members: &[Member], sets: &ModelSets) ->
         .collect()
 }
 
+/// Sleep and phase alone of an ensemble on each of the timelines, in parallel, results in the order of the input.
+pub fn tracks(
+    timelines: &[Timeline],
+    members: &[Member],
+    sets: &ModelSets,
+) -> Vec<Vec<MemberTrack>> {
+    let Some(first) = timelines.first() else {
+        return Vec::new();
+    };
+    let engine = Engine::new(sets);
+    let warm = engine.warm_up(members, &first.habits);
+    timelines
+        .par_iter()
+        .map(|timeline| engine.tracks(&warm, timeline))
+        .collect()
+}
+
 /// The models with the numbers of their sets, ready for any number of lines.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Engine {
@@ -133,6 +152,7 @@ pub struct Engine {
     cascade: Cascade,
     reader: DayReader,
     melatonin: MelatoninMarkers,
+    amplitude_floor: f64,
 }
 
 impl Engine {
@@ -155,6 +175,7 @@ impl Engine {
                 onset_before_cbtmin_min: reading.dlmo_before_cbtmin_min,
                 duration_min: reading.melatonin_duration_min,
             },
+            amplitude_floor: reading.amplitude_floor,
         }
     }
 
@@ -207,7 +228,7 @@ impl Engine {
             .iter()
             .map(|unit| self.live_unit(unit, timeline))
             .collect();
-        joined(parts, self.melatonin)
+        joined(parts, self.melatonin, self.amplitude_floor)
     }
 
     /// Cortisol is read date by date and its rows are forgotten: memory does not grow with the roster.
@@ -309,13 +330,14 @@ fn quiescent_references(
 }
 
 /// Puts the units of one timeline together, members in order.
-fn joined(parts: Vec<UnitPart>, melatonin: MelatoninMarkers) -> Simulation {
+fn joined(parts: Vec<UnitPart>, melatonin: MelatoninMarkers, amplitude_floor: f64) -> Simulation {
     let mut simulation = Simulation {
         tracks: Vec::new(),
         days: Vec::new(),
         habitual: Vec::new(),
         curve: Vec::new(),
         melatonin,
+        amplitude_floor,
     };
     let mut samples: Vec<(Minute, Vec<f64>)> = Vec::new();
     for part in parts {

@@ -12,13 +12,14 @@ pub mod figure;
 pub mod figures;
 pub mod findings;
 pub mod lines;
+pub mod pacemakers;
 pub mod wording;
 pub mod workers;
 
 pub use audience::Audience;
 pub use document::{
     BandValue, CasedBand, DayRow, FindingRow, LineSection, LineShiftRow, LineWindowRow, NumberRow,
-    PackRow, Provenance, ScreenReport, ShiftRow, Summary, WindowRow, WorkerSection,
+    PacemakerRow, PackRow, Provenance, ScreenReport, ShiftRow, Summary, WindowRow, WorkerSection,
 };
 
 use crate::assessment::{Assessment, Attention, Criteria, Pack, WindowClass};
@@ -49,6 +50,8 @@ pub struct ReportInput<'a> {
     pub criteria: &'a Criteria,
     /// Parameter sets.
     pub sets: &'a ModelSets,
+    /// The same lines on other pacemakers.
+    pub beside: &'a [pacemakers::Beside],
     /// Defaults around duty.
     pub habits: &'a HabitFile,
     /// What was wrong or assumed in the files.

@@ -24,6 +24,8 @@ use rayon::prelude::*;
 pub struct Validation {
     /// Pacemakers, the first one scored.
     pub pacemakers: Vec<PacemakerName>,
+    /// Parameter sets; the pacemaker's is taken for its own.
+    pub sets: ModelSets,
     /// Members of the ensemble.
     pub members: usize,
     /// Seed of the ensemble.
@@ -48,7 +50,7 @@ pub struct ValidationReport {
 /// # Example
 ///
 /// ```
-/// use acroshift::physiology::PacemakerName;
+/// use acroshift::physiology::{ModelSets, PacemakerName};
 /// use acroshift::validation::{run, Experiments, Validation};
 /// let text = r#"
 /// format = "acroshift.experiments/1"
@@ -70,7 +72,12 @@ pub struct ValidationReport {
 /// observed = -1.0
 /// "#;
 /// let experiments = Experiments::read(text)?;
-/// let report = run(&experiments, Validation { pacemakers: vec![PacemakerName::Hilaire2007], members: 8, seed: 1 });
+/// let report = run(&experiments, Validation {
+///     pacemakers: vec![PacemakerName::Hilaire2007],
+///     sets: ModelSets::embedded(),
+///     members: 8,
+///     seed: 1,
+/// });
 /// // Bright evenings delay.
 /// assert!(report.rows[0].modelled[0].1.median < 0.0);
 /// # Ok::<(), acroshift::validation::ExperimentError>(())
@@ -119,7 +126,11 @@ fn rows(experiment: &Experiment, validation: &Validation) -> Vec<Row> {
         .iter()
         .map(|name| Models {
             name: *name,
-            sets: ModelSets::with_pacemaker(*name),
+            sets: if validation.pacemakers[0] == *name {
+                validation.sets.clone()
+            } else {
+                validation.sets.on(*name)
+            },
             habits,
         })
         .collect();

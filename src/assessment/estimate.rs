@@ -88,11 +88,20 @@ pub struct WindowEstimate {
     pub phase_displacement_h: Option<Quantiles>,
     /// `CBTmin` at the next duty against the habitual clock hour, hours; positive is earlier.
     pub cbtmin_displacement_h: Spread,
+    /// Members whose pacemaker has so small an amplitude at that `CBTmin` that its phase is ill-defined.
+    pub ill_defined: usize,
+    /// That `CBTmin`, minutes since the epoch, around the clock.
+    pub cbtmin_at: Quantiles,
     /// Hours awake in the reference quiescent interval before the next duty beyond the habitual ones.
     pub quiescent_awake_excess_h: Quantiles,
 }
 
 impl WindowEstimate {
+    /// Is the phase of at least half of the members ill-defined? Then a direction of its shift means nothing.
+    pub fn phase_is_ill_defined(&self) -> bool {
+        2 * self.ill_defined >= self.members
+    }
+
     /// Shares of members whose sleep is short.
     pub fn shares(&self) -> SleepShares {
         SleepShares {
@@ -285,6 +294,12 @@ fn window(
             },
             criteria.evidence.cases_apart.value,
         )?,
+        ill_defined: simulation
+            .tracks
+            .iter()
+            .filter(|track| track.amplitude_before(end) < simulation.amplitude_floor)
+            .count(),
+        cbtmin_at: over(simulation, |t| t.cbtmin_before(end))?.0,
         quiescent_awake_excess_h: quantiles(&excess)?,
     })
 }

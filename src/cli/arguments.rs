@@ -54,9 +54,13 @@ pub(crate) struct ValidateOptions {
     #[arg(long, value_name = "FILE.toml")]
     pub(crate) experiments: Option<PathBuf>,
 
-    /// Only this model of the body clock [default: all four, the first one scored].
-    #[arg(long, value_enum, value_name = "NAME")]
-    pub(crate) pacemaker: Option<PacemakerOption>,
+    /// Model of the body clock; of all four the first one is scored.
+    #[arg(long, value_enum, value_name = "NAME", default_value_t = PacemakerOption::All)]
+    pub(crate) pacemaker: PacemakerOption,
+
+    /// Parameters in the place of those of the program: a file, or hpa-cascade-measured.
+    #[arg(long, value_name = "FILE.toml")]
+    pub(crate) parameters: Vec<String>,
 
     /// Simulated people; rounded up to a multiple of 8.
     #[arg(long, value_name = "N", default_value_t = 32, value_parser = clap::value_parser!(u16).range(1..=4096))]
@@ -123,9 +127,13 @@ pub(crate) struct ScreenOptions {
     #[arg(long, value_name = "N", default_value_t = 1)]
     pub(crate) seed: u64,
 
-    /// Model of the body clock.
+    /// Model of the body clock; all shows the spread between the four beside the first.
     #[arg(long, value_enum, value_name = "NAME", default_value_t = PacemakerOption::Hilaire2007)]
     pub(crate) pacemaker: PacemakerOption,
+
+    /// Parameters in the place of those of the program: a file, or hpa-cascade-measured.
+    #[arg(long, value_name = "FILE.toml")]
+    pub(crate) parameters: Vec<String>,
 
     /// Threads to use [default: all].
     #[arg(long, value_name = "N", value_parser = clap::value_parser!(u16).range(1..=1024))]
@@ -180,16 +188,19 @@ pub(crate) enum PacemakerOption {
     /// Light drive, macroscopic; read its shifts, its clock times stand early.
     #[value(name = "hannay2019")]
     Hannay2019,
+    /// All four; the first is read, the others stand beside it.
+    All,
 }
 
 impl PacemakerOption {
-    /// The pacemaker meant.
-    pub(crate) fn name(self) -> PacemakerName {
+    /// The pacemakers meant, the one that is read first.
+    pub(crate) fn names(self) -> Vec<PacemakerName> {
         match self {
-            Self::Hilaire2007 => PacemakerName::Hilaire2007,
-            Self::Forger1999 => PacemakerName::Forger1999,
-            Self::Jewett1999 => PacemakerName::Jewett1999,
-            Self::Hannay2019 => PacemakerName::Hannay2019,
+            Self::Hilaire2007 => vec![PacemakerName::Hilaire2007],
+            Self::Forger1999 => vec![PacemakerName::Forger1999],
+            Self::Jewett1999 => vec![PacemakerName::Jewett1999],
+            Self::Hannay2019 => vec![PacemakerName::Hannay2019],
+            Self::All => PacemakerName::ALL.to_vec(),
         }
     }
 }

@@ -1,7 +1,7 @@
 //! `acroshift screen`: files to a report.
 
 use super::arguments::{AudienceName, Format, Level, ScreenOptions};
-use super::{Ending, Stop, output};
+use super::{Ending, Stop, output, parameters};
 use acroshift::assessment::{Attention, Pack, pack};
 use acroshift::diagnostic::{Code, Diagnostic, has_errors};
 use acroshift::intake::site::Site;
@@ -52,7 +52,8 @@ pub(super) fn run(options: &ScreenOptions) -> Result<Ending, Stop> {
         site,
         members: usize::from(options.members),
         seed: options.seed,
-        pacemaker: options.pacemaker.name(),
+        sets: parameters::sets(options.pacemaker, &options.parameters)?,
+        beside: options.pacemaker.names().split_off(1),
     };
     let usable = read.roster.as_ref().filter(|_| !unusable);
     let report = usable.and_then(|roster| screen(roster, &read.diagnostics, &hashes, &screening));

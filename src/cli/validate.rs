@@ -1,8 +1,7 @@
 //! `acroshift validate`: published experiments to a table of observed against modelled.
 
 use super::arguments::{TableFormat, ValidateOptions};
-use super::{Ending, Stop, output};
-use acroshift::physiology::PacemakerName;
+use super::{Ending, Stop, output, parameters};
 use acroshift::render::validation as render;
 use acroshift::validation::{Experiments, Validation, run as run_experiments};
 use anyhow::Context;
@@ -12,9 +11,8 @@ use std::io::Write;
 pub(super) fn run(options: &ValidateOptions) -> Result<Ending, Stop> {
     let experiments = experiments(options)?;
     let validation = Validation {
-        pacemakers: options
-            .pacemaker
-            .map_or(PacemakerName::ALL.to_vec(), |chosen| vec![chosen.name()]),
+        pacemakers: options.pacemaker.names(),
+        sets: parameters::sets(options.pacemaker, &options.parameters)?,
         members: usize::from(options.members),
         seed: options.seed,
     };

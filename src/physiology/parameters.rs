@@ -61,7 +61,7 @@ macro_rules! shared_section {
 
 shared_section! {
     /// Where phase is read.
-    PacemakerMarker { angle, cbtmin_offset, dlmo_before_cbtmin, melatonin_duration }
+    PacemakerMarker { angle, cbtmin_offset, dlmo_before_cbtmin, melatonin_duration, amplitude_floor }
 }
 
 shared_section! {
@@ -168,6 +168,8 @@ pub struct PacemakerReading {
     pub dlmo_before_cbtmin_min: f64,
     /// From DLMO to melatonin offset, minutes.
     pub melatonin_duration_min: f64,
+    /// Share of the habitual amplitude below which phase is ill-defined.
+    pub amplitude_floor: f64,
     /// First two state variables and `n` at the first habitual midnight.
     pub start: [f64; 3],
     /// Habitual days lived before the roster.
@@ -181,6 +183,7 @@ impl PacemakerReading {
             cbtmin_offset_min: marker.cbtmin_offset.value * 60.0,
             dlmo_before_cbtmin_min: marker.dlmo_before_cbtmin.value * 60.0,
             melatonin_duration_min: marker.melatonin_duration.value * 60.0,
+            amplitude_floor: marker.amplitude_floor.value,
             start: [start.first.value, start.second.value, start.n.value],
             habitual_days: start.habitual_days.value,
         }
@@ -208,6 +211,17 @@ impl PacemakerSet {
                 toml::from_str(include_str!("parameters/hannay2019.toml")).expect(READ_BY_A_TEST),
             ),
         }
+    }
+
+    /// Replaces the numbers by those of a file of the same model.
+    fn replace(&mut self, text: &str) -> Result<(), ParameterError> {
+        match self {
+            Self::Hilaire(set) => *set = whole(text)?,
+            Self::Forger(set) => *set = whole(text)?,
+            Self::Jewett(set) => *set = whole(text)?,
+            Self::Hannay(set) => *set = whole(text)?,
+        }
+        Ok(())
     }
 
     /// Where phase is read and where habitual days begin.
@@ -301,6 +315,54 @@ parameter_set! {
     }
 }
 
+/// Sets that come with the program beside those in use.
+const ALTERNATIVES: [(&str, &str); 1] = [(
+    "hpa-cascade-measured",
+    include_str!("parameters/hpa-cascade-measured.toml"),
+)];
+
+/// The name of a set, whatever else it holds.
+#[derive(Debug, Deserialize)]
+struct Named {
+    name: String,
+}
+
+fn whole<T: serde::de::DeserializeOwned>(text: &str) -> Result<T, ParameterError> {
+    toml::from_str(text).map_err(ParameterError::unreadable)
+}
+
+/// A set of parameters cannot be used.
+#[derive(Debug, Clone, PartialEq, thiserror::Error)]
+#[non_exhaustive]
+pub enum ParameterError {
+    /// Not TOML, not whole, or with an unknown key.
+    #[error("the parameters cannot be read: {0}")]
+    Unreadable(String),
+    /// No set of that name is in use.
+    #[error(
+        "no set named \"{0}\" is in use; a file replaces hpa-cascade, two-process, light, ensemble or the pacemaker that is chosen, and hpa-cascade-measured comes with the program"
+    )]
+    Unknown(String),
+    /// A number is out of range.
+    #[error("{key} must lie in {low} to {high}, found {found}")]
+    OutOfRange {
+        /// Set and key.
+        key: String,
+        /// Lowest value.
+        low: f64,
+        /// Highest value.
+        high: f64,
+        /// What was found.
+        found: f64,
+    },
+}
+
+impl ParameterError {
+    fn unreadable(error: toml::de::Error) -> Self {
+        Self::Unreadable(error.to_string())
+    }
+}
+
 /// The parameter sets of one run.
 #[derive(Debug, Clone, PartialEq)]
 pub struct ModelSets {
@@ -338,6 +400,108 @@ impl ModelSets {
             ensemble: toml::from_str(include_str!("parameters/ensemble.toml"))
                 .expect(READ_BY_A_TEST),
         }
+    }
+
+    /// The same sets with another pacemaker.
+    pub fn on(&self, name: PacemakerName) -> Self {
+        Self {
+            pacemaker: PacemakerSet::embedded(name),
+            ..self.clone()
+        }
+    }
+
+    /// Replaces one set by that of a file: the set whose name begins its `name`, or a pacemaker's own.
+    ///
+    /// `name_or_text` is the name of a set that comes with the program (`hpa-cascade-measured`) or the text of a file.
+    ///
+    /// # Errors
+    ///
+    /// [`ParameterError`] when the text is no whole set, or a number cannot be.
+    ///
+    /// # Example
+    ///
+    /// ```
+    /// use acroshift::physiology::ModelSets;
+    /// let mut sets = ModelSets::embedded();
+    /// sets.replace("hpa-cascade-measured")?;
+    /// assert_eq!(sets.cascade.name, "hpa-cascade-measured");
+    /// assert!(sets.replace("name = \"two-process\"").is_err());
+    /// # Ok::<(), acroshift::physiology::parameters::ParameterError>(())
+    /// ```
+    pub fn replace(&mut self, name_or_text: &str) -> Result<(), ParameterError> {
+        let text = ALTERNATIVES
+            .iter()
+            .find(|(name, _)| *name == name_or_text)
+            .map_or(name_or_text, |(_, text)| text);
+        let named: Named = toml::from_str(text).map_err(ParameterError::unreadable)?;
+        let own = self.pacemaker.name_and_publication().0.to_owned();
+        match named.name.as_str() {
+            name if name.starts_with("hpa-cascade") => self.cascade = whole(text)?,
+            name if name.starts_with("two-process") => self.sleep = whole(text)?,
+            name if name.starts_with("light") => self.light = whole(text)?,
+            name if name.starts_with("ensemble") => self.ensemble = whole(text)?,
+            name if name == own => self.pacemaker.replace(text)?,
+            _ => return Err(ParameterError::Unknown(named.name)),
+        }
+        self.check()
+    }
+
+    /// Numbers that would make nonsense of every result are refused.
+    fn check(&self) -> Result<(), ParameterError> {
+        if let Some((set, key, number)) = self
+            .listed()
+            .into_iter()
+            .find(|(_, _, number)| !number.value.is_finite())
+        {
+            return Err(ParameterError::OutOfRange {
+                key: format!("{set} {key}"),
+                low: f64::MIN,
+                high: f64::MAX,
+                found: number.value,
+            });
+        }
+        let scene = &self.light.scene;
+        let ranges = [
+            (
+                "ensemble period.mean",
+                &self.ensemble.period.mean,
+                23.0,
+                25.5,
+            ),
+            ("ensemble habit.need", &self.ensemble.habit.need, 4.0, 12.0),
+            ("light scene.home_day", &scene.home_day, 0.0, 200_000.0),
+            (
+                "light scene.home_evening",
+                &scene.home_evening,
+                0.0,
+                200_000.0,
+            ),
+            ("light scene.work", &scene.work, 0.0, 200_000.0),
+            (
+                "light scene.commute_day",
+                &scene.commute_day,
+                0.0,
+                200_000.0,
+            ),
+            (
+                "light scene.commute_dark",
+                &scene.commute_dark,
+                0.0,
+                200_000.0,
+            ),
+            ("light eye.factor", &self.light.eye.factor, 0.0, 1.0),
+        ];
+        for (key, number, low, high) in ranges {
+            if !(low..=high).contains(&number.value) {
+                return Err(ParameterError::OutOfRange {
+                    key: key.to_owned(),
+                    low,
+                    high,
+                    found: number.value,
+                });
+            }
+        }
+        Ok(())
     }
 
     /// Every number in use: set, key, value with unit and source.

@@ -103,6 +103,14 @@ impl MemberTrack {
         self.cbtmin_min[index.max(1) - 1]
     }
 
+    /// Amplitude of the pacemaker at the last `CBTmin` at or before `at`, as a share of the habitual one.
+    pub fn amplitude_before(&self, at: Minute) -> f64 {
+        let index = self
+            .cbtmin_min
+            .partition_point(|cbtmin| *cbtmin <= at.as_f64());
+        self.amplitude_ratio[index.max(1) - 1]
+    }
+
     /// The `CBTmin` nearest to `at_min`.
     pub fn cbtmin_nearest(&self, at_min: f64) -> f64 {
         let index = self.cbtmin_min.partition_point(|cbtmin| *cbtmin <= at_min);

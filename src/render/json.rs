@@ -129,6 +129,16 @@ struct Line<'a> {
     shifts: Vec<LineShift<'a>>,
     windows: Vec<LineWindow<'a>>,
     days: Vec<Day<'a>>,
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    pacemakers: Vec<LinePacemaker<'a>>,
+}
+
+#[derive(Serialize)]
+struct LinePacemaker<'a> {
+    pacemaker: &'a str,
+    at: &'a str,
+    cbtmin_displacement_h: Band,
+    sleep_24h: Band,
 }
 
 #[derive(Serialize)]
@@ -177,6 +187,7 @@ struct LineWindow<'a> {
     sleep: &'a str,
     phase_displacement_h: Option<Band>,
     cbtmin_displacement_h: Cased<'a>,
+    phase_ill_defined: Option<&'a str>,
     quiescent_awake_excess_h: Band,
     history_assumed: bool,
 }
@@ -375,6 +386,16 @@ fn line<'a>(section: &'a LineSection, pacemaker: &'a str) -> Line<'a> {
         shifts: section.shifts.iter().map(line_shift).collect(),
         windows: section.windows.iter().map(line_window).collect(),
         days: section.days.iter().map(|row| day(row, pacemaker)).collect(),
+        pacemakers: section
+            .pacemakers
+            .iter()
+            .map(|row| LinePacemaker {
+                pacemaker: &row.pacemaker,
+                at: &row.at,
+                cbtmin_displacement_h: band(row.cbtmin_displacement_h),
+                sleep_24h: band(row.sleep_24h),
+            })
+            .collect(),
     }
 }
 
@@ -432,6 +453,7 @@ fn line_window(row: &LineWindowRow) -> LineWindow<'_> {
         sleep: row.sleep_test,
         phase_displacement_h: row.phase_displacement_h.map(band),
         cbtmin_displacement_h: cased(&row.cbtmin_displacement_h),
+        phase_ill_defined: row.phase_ill_defined.as_deref(),
         quiescent_awake_excess_h: band(row.quiescent_awake_excess_h),
         history_assumed: row.history_assumed,
     }

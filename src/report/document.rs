@@ -274,6 +274,21 @@ pub struct LineSection {
     pub curve: CortisolCurve,
     /// `CBTmin` by day.
     pub clock: PhaseClock,
+    /// The furthest `CBTmin` at the start of a duty on each pacemaker, where several were asked for.
+    pub pacemakers: Vec<PacemakerRow>,
+}
+
+/// What one pacemaker says of the duty at which `CBTmin` stands furthest from habit.
+#[derive(Debug, Clone, PartialEq)]
+pub struct PacemakerRow {
+    /// The pacemaker.
+    pub pacemaker: String,
+    /// Start of that duty, RFC 3339 with offset.
+    pub at: String,
+    /// `CBTmin` displacement there, hours, positive earlier.
+    pub cbtmin_displacement_h: BandValue,
+    /// Sleep in the 24 h before it, hours.
+    pub sleep_24h: BandValue,
 }
 
 /// The members around a duty.
@@ -320,6 +335,8 @@ pub struct LineWindowRow {
     pub phase_displacement_h: Option<BandValue>,
     /// `CBTmin` displacement at the next duty, hours, positive earlier.
     pub cbtmin_displacement_h: CasedBand,
+    /// Said where the phase is ill-defined: a range of clock times takes the place of a direction.
+    pub phase_ill_defined: Option<String>,
     /// Hours awake in the reference quiescent interval beyond the habitual ones.
     pub quiescent_awake_excess_h: BandValue,
     /// The model rests on an assumed history.

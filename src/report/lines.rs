@@ -2,9 +2,9 @@
 
 use super::document::{
     BandValue, CasedBand, DAYLIGHT_NOT_SEEN, DAYLIGHT_SEEN, DayRow, HOUR_DECIMALS, LineSection,
-    LineShiftRow, LineWindowRow, NMOL_DECIMALS, SHARE_DECIMALS, hours,
+    LineShiftRow, LineWindowRow, NMOL_DECIMALS, PacemakerRow, SHARE_DECIMALS, hours,
 };
-use super::{Audience, ReportInput, figures, wording};
+use super::{Audience, ReportInput, figures, pacemakers, wording};
 use crate::assessment::estimate::{
     CbtminEstimate, DayEstimate, ShiftEstimate, Spread, WindowEstimate,
 };
@@ -64,6 +64,7 @@ fn section(
         "generic adult"
     };
     let windows = window_rows(input, line, &on_line);
+    let pacemakers = pacemakers::rows(input, line, simulation);
     LineSection {
         number: line.line.id.0,
         workers: match worker {
@@ -85,17 +86,18 @@ fn section(
             .iter()
             .map(|day| day_row(input.axis, day))
             .collect(),
-        evidence: evidence(input, &windows, person),
+        evidence: evidence(input, &windows, person, &pacemakers),
         raster: figures::raster(input, line, simulation, &heading),
         curve: figures::curve(input, line, simulation, &heading),
         clock: figures::clock(input, line, &heading),
+        pacemakers,
         windows,
         id,
         subject,
     }
 }
 
-fn banded(q: Quantiles) -> BandValue {
+pub(super) fn banded(q: Quantiles) -> BandValue {
     BandValue::rounded(q, HOUR_DECIMALS)
 }
 
@@ -163,9 +165,34 @@ fn window_row(
         sleep_test: window.sleep_test(input.criteria).words(),
         phase_displacement_h: window.phase_displacement_h.map(banded),
         cbtmin_displacement_h: cased(window.cbtmin_displacement_h, banded),
+        phase_ill_defined: ill_defined(input.axis, window),
         quiescent_awake_excess_h: banded(window.quiescent_awake_excess_h),
         history_assumed,
     }
+}
+
+/// A range of clock times where a direction means nothing.
+fn ill_defined(axis: &Axis, window: &WindowEstimate) -> Option<String> {
+    window.phase_is_ill_defined().then(|| {
+        let clock = |minute: f64| {
+            let hours = clock_band(
+                axis,
+                Quantiles {
+                    median: minute,
+                    p05: minute,
+                    p95: minute,
+                },
+            );
+            crate::units::ClockHour::wrapping(hours.median).to_string()
+        };
+        format!(
+            "phase ill-defined: amplitude low in {} of {} members; CBTmin between {} and {}",
+            window.ill_defined,
+            window.members,
+            clock(window.cbtmin_at.p05),
+            clock(window.cbtmin_at.p95)
+        )
+    })
 }
 
 fn day_row(axis: &Axis, day: &DayEstimate) -> DayRow {
@@ -224,7 +251,12 @@ pub(super) fn clock_band(axis: &Axis, q: Quantiles) -> BandValue {
 /// What is worth a word beside the classes: displaced sleep, moved clock, hours awake in the quiescent interval.
 ///
 /// Windows over 7 days and windows that rest on an assumed history are left out, as in shares.
-fn evidence(input: &ReportInput<'_>, windows: &[LineWindowRow], subject: &str) -> Vec<String> {
+fn evidence(
+    input: &ReportInput<'_>,
+    windows: &[LineWindowRow],
+    subject: &str,
+    pacemakers: &[PacemakerRow],
+) -> Vec<String> {
     let limits = &input.criteria.evidence;
     let longest = input.criteria.rest.listed_above.value;
     let counted: Vec<&LineWindowRow> = windows
@@ -246,6 +278,7 @@ fn evidence(input: &ReportInput<'_>, windows: &[LineWindowRow], subject: &str) -
         ));
     }
     lines.extend(furthest(&counted));
+    lines.extend(pacemakers::sentence(pacemakers));
     let awake = counted
         .iter()
         .filter(|w| w.quiescent_awake_excess_h.median > tolerance)
@@ -273,6 +306,12 @@ fn furthest(windows: &[&LineWindowRow]) -> Option<String> {
             .fold(0.0, f64::max)
     };
     let window = windows.iter().max_by(|a, b| size(a).total_cmp(&size(b)))?;
+    if let Some(range) = &window.phase_ill_defined {
+        return Some(format!(
+            "At the duty after {}: {range}. No direction is given.",
+            window.start_text
+        ));
+    }
     let said: Vec<String> = window
         .cbtmin_displacement_h
         .entries()

@@ -3,7 +3,7 @@
 use crate::rosters::{pattern, read, report};
 use crate::scratch::{messages, results, run};
 use acroshift::assessment::WindowClass;
-use acroshift::physiology::PacemakerName;
+use acroshift::physiology::{ModelSets, PacemakerName};
 use acroshift::report::ScreenReport;
 use serde_json::Value;
 
@@ -232,7 +232,7 @@ fn another_pacemaker_gives_another_clock_and_says_so() {
     let csv = pattern("NNNNN..", 3, &[('N', "23:00", "07:00")]);
     let last = |name: PacemakerName| {
         let screening = acroshift::Screening {
-            pacemaker: name,
+            sets: ModelSets::with_pacemaker(name),
             ..crate::rosters::screening(&["eu-wtd"])
         };
         let report = crate::rosters::report_with(&csv, "UTC", &screening);

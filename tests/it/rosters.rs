@@ -3,7 +3,7 @@
 use acroshift::assessment::pack;
 use acroshift::intake::site::Site;
 use acroshift::intake::{self, Input, Intake, Reading};
-use acroshift::physiology::PacemakerName;
+use acroshift::physiology::ModelSets;
 use acroshift::report::{Audience, ScreenReport};
 use acroshift::{Screening, screen};
 use chrono::{Days, NaiveDate};
@@ -30,7 +30,8 @@ pub(crate) fn screening(packs: &[&str]) -> Screening {
         site: Site::default(),
         members: 32,
         seed: 1,
-        pacemaker: PacemakerName::Hilaire2007,
+        sets: ModelSets::embedded(),
+        beside: Vec::new(),
     }
 }
 

@@ -2,7 +2,7 @@
 //!
 //! Source of every observed value: the citations in `src/validation/experiments.toml`.
 
-use acroshift::physiology::PacemakerName;
+use acroshift::physiology::{ModelSets, PacemakerName};
 use acroshift::render::validation::{csv, html, json, markdown, text};
 use acroshift::validation::{
     ExperimentError, Experiments, Held, Validation, ValidationReport, run,
@@ -18,6 +18,7 @@ fn report() -> &'static ValidationReport {
     REPORT.get_or_init(|| {
         let validation = Validation {
             pacemakers: PacemakerName::ALL.to_vec(),
+            sets: ModelSets::embedded(),
             members: 32,
             seed: 1,
         };

@@ -38,6 +38,7 @@ fn simulation(tracks: Vec<MemberTrack>) -> Simulation {
         tracks,
         days: Vec::new(),
         curve: Vec::new(),
+        amplitude_floor: 0.4,
         melatonin: MelatoninMarkers {
             onset_before_cbtmin_min: 420.0,
             duration_min: 600.0,

@@ -119,7 +119,12 @@ fn windows_table(line: &LineSection) -> Markup {
                             None => "no sleep in 24 h",
                         }
                     }
-                    td { (cased(&window.cbtmin_displacement_h, |value| shift_band(value, 1.0))) }
+                    td {
+                        @match &window.phase_ill_defined {
+                            Some(range) => (range),
+                            None => (cased(&window.cbtmin_displacement_h, |value| shift_band(value, 1.0))),
+                        }
+                    }
                     td class="number" { (band(window.quiescent_awake_excess_h, 1)) }
                 }
             } }

@@ -2,10 +2,11 @@
 //!
 //! Fitted to hourly means of Carroll 2007 and Yehuda 1996, each with a free gain, since groups differ in level by the factor 1.7;
 //! quiescence is drawn towards 5.75 h (Weibel 1996: about 5 h; Yehuda 5.0 h; three of four groups 5.0 to 6.3 h).
-//! Golier 2007 and Bremner 2007 are kept for validation. The groups' means were digitised by the author of a public package (VeVaPy, MIT)
+//! Golier 2007 and Bremner 2007 are kept for validation. The groups' means were digitised by the author of a public package (`VeVaPy`, MIT)
 //! from published figures and are taken here as hourly means, nmol/L.
 //! Both sets of constants are printed against all four groups.
 //! Run with `cargo run --release --example cascade_constants`.
+#![expect(clippy::print_stdout, reason = "what is measured or fitted is printed")]
 
 #[path = "simplex.rs"]
 mod simplex;

@@ -4,6 +4,11 @@
 //! Printed for each instruction set of the machine: the pacemaker alone under prescribed light, and the full coupled physiology
 //! (sleep, light, pacemaker, cortisol cascade, daily features) on a roster of night blocks; then the cost at three sizes.
 //! Run with `cargo bench --bench kernel`.
+#![expect(
+    clippy::print_stdout,
+    clippy::disallowed_methods,
+    reason = "what is measured or fitted is printed"
+)]
 
 use acroshift::numeric::instruction_set::InstructionSet;
 use acroshift::physiology::pacemaker::{LANES, MarkerReader, Pacemaker, UnitDrive};
@@ -124,6 +129,7 @@ fn physiology_rate(set: InstructionSet, workers: u32, days: u32, size: usize) ->
         seed: 1,
         commute_min: 30.0,
         morning_daylight: None,
+        habit: None,
     };
     let members: Vec<Member> = members(&sets.ensemble, sampling);
     let timelines: Vec<Timeline> = (0..workers)
@@ -154,6 +160,7 @@ fn night_blocks(days: u32, shift: u32) -> Timeline {
                 end_clock: clock(420),
                 commute_min: None,
                 light: None,
+                way_light: [None; 2],
             })
             .collect(),
         days: (0..days)

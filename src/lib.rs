@@ -37,12 +37,12 @@ pub mod render;
 
 use assessment::{AssessmentInput, Criteria, Pack};
 use intake::site::Site;
+use physiology::light::LightScenes;
 use physiology::{ModelSets, PacemakerName, Sampling};
 use report::pacemakers::Beside;
 use report::{Audience, ReportInput, RunFacts, ScreenReport};
 use roster::Roster;
 use timeline::{Axis, HabitFile, SiteScene, Timeline};
-use units::Lux;
 
 /// How a roster is screened.
 #[derive(Debug, Clone, PartialEq)]
@@ -100,7 +100,10 @@ pub fn screen(
     screening: &Screening,
 ) -> Option<ScreenReport> {
     let habit_file = HabitFile::embedded();
-    let sets = &screening.sets;
+    let sets = &ModelSets {
+        light: LightScenes::at_site(&screening.sets.light, &screening.site.light),
+        ..screening.sets.clone()
+    };
     let criteria = Criteria::embedded();
 
     // A commute is the worker's own: the planner's generic adult does not have it.
@@ -112,8 +115,8 @@ pub fn screen(
 
     // Civil time becomes elapsed time.
     let scene = SiteScene {
-        work_light: work_light(screening.site.task_light, sets),
         place: screening.site.place,
+        sky: screening.site.sky,
         habits: habit_file.habits(),
     };
     let axis = Axis::of(roster, &scene)?;
@@ -132,10 +135,11 @@ pub fn screen(
             .commute_min
             .unwrap_or(scene.habits.commute_h * 60.0),
         morning_daylight: screening.site.morning_daylight,
+        habit: None,
     };
     let members = physiology::members(&sets.ensemble, sampling);
     let simulations = physiology::simulate(&timelines, &members, sets);
-    let beside = lived_beside(screening, &timelines, &members);
+    let beside = lived_beside(screening, sets, &timelines, &members);
 
     // Law, advice and model are held against the windows, side by side.
     let assessment = assessment::assess(&AssessmentInput {
@@ -177,6 +181,7 @@ pub fn screen(
 /// The same lines lived on the other pacemakers asked for.
 fn lived_beside(
     screening: &Screening,
+    sets: &ModelSets,
     timelines: &[Timeline],
     members: &[physiology::Member],
 ) -> Vec<Beside> {
@@ -185,13 +190,7 @@ fn lived_beside(
         .iter()
         .map(|pacemaker| Beside {
             pacemaker: *pacemaker,
-            tracks: physiology::tracks(timelines, members, &screening.sets.on(*pacemaker)),
+            tracks: physiology::tracks(timelines, members, &sets.on(*pacemaker)),
         })
         .collect()
-}
-
-/// Light at the eye on duty from the light on the task.
-fn work_light(task_light: Option<Lux>, sets: &ModelSets) -> Option<Lux> {
-    let at_eye = task_light?.get() * sets.light.eye.factor.value;
-    Lux::new(at_eye).ok()
 }

@@ -12,6 +12,7 @@ pub mod cascade;
 pub mod coupled;
 pub mod day;
 pub mod ensemble;
+pub mod free_cortisol;
 pub mod light;
 pub mod pacemaker;
 pub mod parameters;

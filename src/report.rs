@@ -250,6 +250,10 @@ fn numbers(input: &ReportInput<'_>) -> Vec<NumberRow> {
         ("commute.median", &around.commute.median),
         ("daylight.sunrise", &around.daylight.sunrise),
         ("daylight.sunset", &around.daylight.sunset),
+        (
+            "daylight.outdoor_eye_share",
+            &around.daylight.outdoor_eye_share,
+        ),
         ("joining.gap", &around.joining.gap),
         ("joining.split_gap", &around.joining.split_gap),
         ("joining.split_span", &around.joining.split_span),

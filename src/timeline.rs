@@ -5,15 +5,17 @@
 
 pub mod civil;
 pub mod habits;
+pub mod light;
 pub mod plan;
 
 pub use civil::{CivilClock, CivilDay, DaylightSource};
 pub use habits::{HabitFile, Habits};
+pub use light::SiteLight;
 
-use crate::numeric::sun::Place;
+use crate::numeric::sun::{Place, Sky, elevation_deg, horizontal_illuminance_lux};
 use crate::roster::{DutyBlock, Roster, WorkerId};
 use crate::units::{ClockHour, Lux, Minute, minutes_to_hours};
-use chrono::{DateTime, Days, NaiveDate, Utc};
+use chrono::{DateTime, Datelike, Days, Duration, NaiveDate, Timelike, Utc};
 use chrono_tz::Tz;
 
 /// One counted duty on the elapsed time axis.
@@ -29,8 +31,10 @@ pub struct DutySpan {
     pub end_clock: ClockHour,
     /// Commute of this duty from the roster, minutes each way; otherwise the member's own.
     pub commute_min: Option<f64>,
-    /// Light at the eye on duty from the site, otherwise the default.
+    /// Light at the eye on this duty, where it differs from that of all duties.
     pub light: Option<Lux>,
+    /// Daylight at the eye on the way to and from this duty, where place and sky are known.
+    pub way_light: [Option<Lux>; 2],
 }
 
 /// One duty line in elapsed time.
@@ -61,15 +65,25 @@ impl Timeline {
 /// What the site adds to a roster.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct SiteScene {
-    /// Light at the eye on duty, where the site file gives it.
-    pub work_light: Option<Lux>,
     /// Where the workplace is, for daylight.
     pub place: Option<Place>,
+    /// What the sky is like.
+    pub sky: Option<Sky>,
     /// Time around duty.
     pub habits: Habits,
 }
 
 impl SiteScene {
+    /// Daylight at the eye on the way at an instant, lux.
+    fn way_light(&self, instant: DateTime<Utc>) -> Option<Lux> {
+        let (place, sky) = (self.place?, self.sky?);
+        let of_day = f64::from(instant.num_seconds_from_midnight()) / 86_400.0;
+        let moment = f64::from(instant.num_days_from_ce()) + of_day;
+        let elevation = elevation_deg(moment, place);
+        let outdoors = horizontal_illuminance_lux(elevation, instant.ordinal(), sky);
+        Lux::new(outdoors * self.habits.outdoor_eye_share).ok()
+    }
+
     /// Where daylight comes from.
     fn daylight(&self) -> DaylightSource {
         match self.place {
@@ -113,7 +127,7 @@ impl Axis {
         Some(Self {
             epoch,
             days: civil::days(zone, epoch, (first_date, last_date), scene.daylight()),
-            clock: CivilClock::of(zone, epoch, last + chrono::Duration::days(3)),
+            clock: CivilClock::of(zone, epoch, last + Duration::days(3)),
             zone,
             last_start: roster.shifts.iter().map(|shift| shift.start).max()?,
         })
@@ -148,7 +162,7 @@ impl Axis {
 
     /// Instant of an elapsed minute.
     pub fn instant(&self, minute: Minute) -> DateTime<Utc> {
-        self.epoch + chrono::Duration::minutes(minute.0)
+        self.epoch + Duration::minutes(minute.0)
     }
 }
 
@@ -186,12 +200,18 @@ fn duty_span(block: &DutyBlock, axis: &Axis, scene: &SiteScene) -> DutySpan {
     let start = axis.minute(block.start);
     let end = axis.minute(block.end);
     let clock = |minute: Minute| ClockHour::wrapping(minutes_to_hours(axis.clock.at(minute)));
+    // The light of the way is that of its middle with the median commute.
+    let half_way = Duration::seconds(Minute::nearest(scene.habits.commute_h * 1800.0).0);
     DutySpan {
         start,
         end,
         start_clock: clock(start),
         end_clock: clock(end),
         commute_min: block.commute_min.map(f64::from),
-        light: scene.work_light,
+        light: None,
+        way_light: [
+            scene.way_light(block.start - half_way),
+            scene.way_light(block.end + half_way),
+        ],
     }
 }

@@ -158,6 +158,7 @@ pub fn rows_of(experiment: &Experiment, models: &[Models], members: usize, seed:
                 seed,
                 commute_min: model.habits.commute_h * 60.0,
                 morning_daylight: None,
+                habit: None,
             };
             let quantities = lives::quantities(experiment, &model.sets, sampling, model.habits);
             (model.name, quantities)

@@ -1,7 +1,8 @@
 //! The site file: what the workplace adds to every roster.
 
 use super::zone_name::zone_named;
-use crate::numeric::sun::Place;
+use crate::numeric::sun::{Place, Sky};
+use crate::timeline::light::{Areas, SiteLight};
 use crate::units::Lux;
 use chrono_tz::Tz;
 use serde::Deserialize;
@@ -14,10 +15,12 @@ pub struct Site {
     pub zone: Option<Tz>,
     /// Rule packs.
     pub rules: Vec<String>,
-    /// Light on the task, lux; the eye gets a share of it.
-    pub task_light: Option<Lux>,
+    /// Light at work, at home and on the way.
+    pub light: SiteLight,
     /// Where the workplace is, for daylight.
     pub place: Option<Place>,
+    /// What the sky is like on the way.
+    pub sky: Option<Sky>,
     /// Median commute each way, minutes.
     pub commute_min: Option<f64>,
     /// Is morning daylight seen on the way home from nights?
@@ -34,6 +37,14 @@ struct SiteFile {
     #[serde(default)]
     rules: Vec<String>,
     task_light_lux: Option<f64>,
+    work_area: Option<String>,
+    eye_factor: Option<f64>,
+    home_day_lux: Option<f64>,
+    home_evening_lux: Option<f64>,
+    commute_outdoors: Option<bool>,
+    #[serde(default)]
+    sunglasses: bool,
+    sky: Option<String>,
     latitude: Option<f64>,
     longitude: Option<f64>,
     commute_min: Option<f64>,
@@ -74,13 +85,11 @@ pub enum SiteError {
 pub fn read(text: &str) -> Result<Site, SiteError> {
     let file: SiteFile =
         toml::from_str(text).map_err(|error| SiteError::Unreadable(error.to_string()))?;
+    let light = light(&file)?;
+    let sky = sky(&file)?;
     let zone = file
         .zone
         .map(|name| zone_named(&name).map_err(SiteError::Zone))
-        .transpose()?;
-    let task_light = file
-        .task_light_lux
-        .map(|lux| Lux::new(lux).map_err(|error| SiteError::Number(error.to_string())))
         .transpose()?;
     if let Some(commute) = file.commute_min
         && !(0.0..=240.0).contains(&commute)
@@ -92,11 +101,72 @@ pub fn read(text: &str) -> Result<Site, SiteError> {
     Ok(Site {
         zone,
         rules: file.rules,
-        task_light,
+        light,
+        sky,
         place: place(file.latitude, file.longitude)?,
         commute_min: file.commute_min,
         morning_daylight: file.morning_daylight,
         derogations: file.derogations,
+    })
+}
+
+/// Everything about light, in the units of the file.
+fn light(file: &SiteFile) -> Result<SiteLight, SiteError> {
+    let lux = |key: &str, value: Option<f64>| {
+        value
+            .map(|lux| Lux::new(lux).map_err(|error| SiteError::Number(format!("{key}: {error}"))))
+            .transpose()
+    };
+    if let Some(factor) = file.eye_factor
+        && !(0.0..=1.0).contains(&factor)
+    {
+        return Err(SiteError::Number(format!(
+            "eye_factor must lie in 0 to 1, found {factor}"
+        )));
+    }
+    Ok(SiteLight {
+        task: lux("task_light_lux", file.task_light_lux)?
+            .or(area_light(file.work_area.as_deref())?),
+        eye_factor: file.eye_factor,
+        home_day: lux("home_day_lux", file.home_day_lux)?,
+        home_evening: lux("home_evening_lux", file.home_evening_lux)?,
+        commute_outdoors: file.commute_outdoors,
+        sunglasses: file.sunglasses,
+    })
+}
+
+fn area_light(name: Option<&str>) -> Result<Option<Lux>, SiteError> {
+    let Some(name) = name else { return Ok(None) };
+    let areas = Areas::embedded();
+    let known = || {
+        areas
+            .listed()
+            .map(|(name, _)| name)
+            .collect::<Vec<_>>()
+            .join(", ")
+    };
+    let light = areas.task_light(name).ok_or_else(|| {
+        SiteError::Number(format!(
+            "work_area \"{name}\" is not known; known are {}",
+            known()
+        ))
+    })?;
+    Ok(Lux::new(light.value).ok())
+}
+
+fn sky(file: &SiteFile) -> Result<Option<Sky>, SiteError> {
+    let Some(name) = &file.sky else {
+        return Ok(None);
+    };
+    if file.latitude.is_none() {
+        return Err(SiteError::Number(
+            "sky needs latitude and longitude, from which the height of the sun follows".to_owned(),
+        ));
+    }
+    Sky::named(name).map(Some).ok_or_else(|| {
+        SiteError::Number(format!(
+            "sky must be clear, partly-cloudy or overcast, found \"{name}\""
+        ))
     })
 }
 
@@ -130,6 +200,23 @@ fn place(latitude: Option<f64>, longitude: Option<f64>) -> Result<Option<Place>,
 #[cfg(test)]
 mod tests {
     use super::*;
+
+    #[test]
+    fn light_is_read_with_its_place_in_the_file() {
+        let site = read("work_area = \"office\"\neye_factor = 0.5\nsunglasses = true").unwrap();
+        assert_eq!(site.light.task.map(Lux::get), Some(500.0));
+        for (wrong, told) in [
+            ("work_area = \"moon\"", "ward-night"),
+            ("eye_factor = 2.0", "eye_factor"),
+            ("home_day_lux = -1.0", "home_day_lux"),
+            ("task_light_lux = nan", "task_light_lux"),
+            ("sky = \"clear\"", "latitude"),
+            ("sky = \"blue\"\nlatitude = 50\nlongitude = 0", "overcast"),
+        ] {
+            let error = read(wrong).unwrap_err().to_string();
+            assert!(error.contains(told), "{wrong}: {error}");
+        }
+    }
 
     #[test]
     fn places_are_whole_and_on_earth() {

@@ -82,6 +82,20 @@ pub fn one_minus_tanh(z: f64) -> f64 {
     2.0 / (exp(2.0 * z) + 1.0)
 }
 
+/// Are all three true? Without a branch, unlike `&&`.
+///
+/// # Example
+///
+/// ```
+/// use acroshift::numeric::lane::all;
+/// assert!(all([true, true, true]) && !all([true, false, true]));
+/// ```
+#[inline(always)]
+pub fn all(conditions: [bool; 3]) -> bool {
+    let [a, b, c] = conditions.map(u8::from);
+    a & b & c == 1
+}
+
 /// Whole turns taken away: the angle in [-pi, pi].
 ///
 /// # Example

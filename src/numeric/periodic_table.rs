@@ -52,10 +52,6 @@ impl PeriodicTable {
     /// assert!((table.at(-1080.0) - 1.0).abs() < 1e-5);
     /// ```
     #[inline(always)]
-    #[expect(
-        clippy::cast_possible_truncation,
-        reason = "the mask leaves a small number"
-    )]
     pub fn at(&self, minute: f64) -> f64 {
         let position = minute * (ENTRIES_F64 / PERIOD_MIN);
         // The low bits of the sum hold the whole entries, in two's complement when negative.

@@ -48,6 +48,40 @@ impl Member {
     }
 }
 
+/// What is known of a person's habits; phase follows it, and the spread of phase shrinks to what is left.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub enum Habit {
+    /// Habitual bedtime and waking on free days, clock hours; bed from 24 on lies after midnight.
+    Hours {
+        /// Bedtime.
+        bed_h: f64,
+        /// Waking.
+        wake_h: f64,
+    },
+    /// Mid-sleep on free days, corrected for sleep debt, clock hour.
+    MidSleep(f64),
+    /// Morningness-eveningness score, 16 to 86.
+    Meq(f64),
+}
+
+impl Habit {
+    /// Mid-sleep (clock hour) and sleep need (h, where it is known).
+    fn mid_sleep_and_need(self, set: &EnsembleSet) -> (f64, Option<f64>) {
+        match self {
+            Self::Hours { bed_h, wake_h } => {
+                let need_h = crate::numeric::circular::wrap(wake_h - bed_h, 24.0);
+                (bed_h + need_h / 2.0, Some(need_h))
+            }
+            Self::MidSleep(clock_h) => (clock_h + 24.0, None),
+            Self::Meq(score) => {
+                let usual = set.habit.bed.value + set.habit.need.value / 2.0;
+                let meq = &set.meq;
+                (usual + meq.slope.value * (score - meq.neither.value), None)
+            }
+        }
+    }
+}
+
 /// How the ensemble is drawn.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct Sampling {
@@ -59,6 +93,8 @@ pub struct Sampling {
     pub commute_min: f64,
     /// Is morning daylight seen on the way home? Unknown gives half the members each.
     pub morning_daylight: Option<bool>,
+    /// The person's habits, where they are known.
+    pub habit: Option<Habit>,
 }
 
 /// The members of a run.
@@ -87,11 +123,20 @@ pub fn members(set: &EnsembleSet, sampling: Sampling) -> Vec<Member> {
 fn member(set: &EnsembleSet, sampling: Sampling, z: &[f64], seen: bool) -> Member {
     let clip = |value: f64, limit: f64| value.clamp(-limit, limit);
     let limit = set.clipping.sd_units.value;
-    let need_h = set.habit.need.value
+    let drawn_need_h = set.habit.need.value
         + set.habit.need_sd.value * clip(z[3], set.clipping.need_sd_units.value);
-    let mid_sleep_h = set.habit.bed.value
-        + set.habit.need.value / 2.0
-        + set.habit.mid_sleep_sd.value * clip(z[2], limit);
+    let (mid_sleep_h, need_h) = match sampling.habit {
+        None => {
+            let usual = set.habit.bed.value + set.habit.need.value / 2.0;
+            let away = set.habit.mid_sleep_sd.value * clip(z[2], limit);
+            (usual + away, drawn_need_h)
+        }
+        Some(habit) => {
+            let (mid_sleep_h, need_h) = habit.mid_sleep_and_need(set);
+            let away = set.habit.residual_sd.value * clip(z[2], limit);
+            (mid_sleep_h + away, need_h.unwrap_or(drawn_need_h))
+        }
+    };
     Member {
         tau_h: set.period.mean.value + set.period.sd.value * clip(z[0], limit),
         sensitivity: libm::pow(10.0, set.sensitivity.log10_sd.value * clip(z[1], limit)),
@@ -113,7 +158,35 @@ mod tests {
             seed: 1,
             commute_min: 30.0,
             morning_daylight: None,
+            habit: None,
         }
+    }
+
+    #[test]
+    fn phase_follows_what_is_known_of_the_habits() {
+        let set = ModelSets::embedded().ensemble;
+        let mean_bed = |habit: Option<Habit>| {
+            let sampling = Sampling {
+                habit,
+                ..sampling(32)
+            };
+            let members = members(&set, sampling);
+            members
+                .iter()
+                .map(|m| m.bed_h + m.need_h / 2.0)
+                .sum::<f64>()
+                / 32.0
+        };
+        let usual = mean_bed(None);
+        let hours = Habit::Hours {
+            bed_h: 25.0,
+            wake_h: 9.0,
+        };
+        assert!((mean_bed(Some(hours)) - usual - 2.0).abs() < 0.1);
+        assert!((mean_bed(Some(Habit::MidSleep(5.0))) - usual - 2.0).abs() < 0.1);
+        // Baehr 2000: Tmin 03:50 in morning types (MEQ 60.5), 06:01 in evening types (40.8).
+        let later = mean_bed(Some(Habit::Meq(40.8))) - mean_bed(Some(Habit::Meq(60.5)));
+        assert!((later - 2.18).abs() < 0.05, "{later}");
     }
 
     #[test]

@@ -30,6 +30,8 @@ pub const LANES: usize = 16;
 
 /// Longest step of the integration, minutes: the phase error against an adaptive solver stays below 0.01 min over 80 days up to 10 000 lux.
 pub const LONGEST_STEP_MIN: i64 = 6;
+/// Lengths of step for which the photoreceptors are prepared: 1 to the longest, minutes.
+const STEPS: usize = 6;
 
 /// A pacemaker with the numbers of its set, ready for use.
 #[derive(Debug, Clone, PartialEq)]
@@ -146,6 +148,7 @@ impl Pacemaker {
     }
 
     /// The same pacemaker with a shorter longest step, minutes, at least 1; for convergence tests.
+    #[must_use]
     pub fn with_longest_step(self, longest_step_min: i64) -> Self {
         Self {
             longest_step_min: longest_step_min.clamp(1, LONGEST_STEP_MIN),

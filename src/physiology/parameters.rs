@@ -276,6 +276,8 @@ parameter_set! {
         scene: Scene { asleep, home_day, home_evening, work, commute_day, commute_dark, morning_kept_out }
         /// From task to eye.
         eye: Eye { factor }
+        /// On the way to and from work.
+        way: Way { share, sunglasses }
     }
 }
 
@@ -300,6 +302,27 @@ parameter_set! {
 }
 
 parameter_set! {
+    /// `cortisol-binding`: free and salivary cortisol.
+    BindingSet {
+        /// Binding to proteins.
+        binding: BindingNumbers { cbg, constant, slope, product }
+        /// From free serum cortisol to saliva.
+        saliva: Saliva { share_of_free }
+    }
+}
+
+impl BindingSet {
+    /// The set embedded in the program.
+    ///
+    /// # Panics
+    ///
+    /// Never in a built program: a test reads every file.
+    pub fn embedded() -> Self {
+        toml::from_str(include_str!("parameters/cortisol-binding.toml")).expect(READ_BY_A_TEST)
+    }
+}
+
+parameter_set! {
     /// `ensemble`: spread of the simulated people.
     EnsembleSet {
         /// Intrinsic period.
@@ -307,7 +330,9 @@ parameter_set! {
         /// Light sensitivity.
         sensitivity: Sensitivity { log10_sd }
         /// Habitual sleep.
-        habit: HabitSpread { bed, need, mid_sleep_sd, need_sd }
+        habit: HabitSpread { bed, need, mid_sleep_sd, need_sd, residual_sd }
+        /// Morningness-eveningness score to phase.
+        meq: MeqScale { neither, slope }
         /// Commute.
         commute: CommuteSpread { ln_sd }
         /// Clipping of the normal deviates.
@@ -328,7 +353,7 @@ struct Named {
 }
 
 fn whole<T: serde::de::DeserializeOwned>(text: &str) -> Result<T, ParameterError> {
-    toml::from_str(text).map_err(ParameterError::unreadable)
+    toml::from_str(text).map_err(|error| ParameterError::unreadable(&error))
 }
 
 /// A set of parameters cannot be used.
@@ -358,7 +383,7 @@ pub enum ParameterError {
 }
 
 impl ParameterError {
-    fn unreadable(error: toml::de::Error) -> Self {
+    fn unreadable(error: &toml::de::Error) -> Self {
         Self::Unreadable(error.to_string())
     }
 }
@@ -403,6 +428,7 @@ impl ModelSets {
     }
 
     /// The same sets with another pacemaker.
+    #[must_use]
     pub fn on(&self, name: PacemakerName) -> Self {
         Self {
             pacemaker: PacemakerSet::embedded(name),
@@ -433,7 +459,8 @@ impl ModelSets {
             .iter()
             .find(|(name, _)| *name == name_or_text)
             .map_or(name_or_text, |(_, text)| text);
-        let named: Named = toml::from_str(text).map_err(ParameterError::unreadable)?;
+        let named: Named =
+            toml::from_str(text).map_err(|error| ParameterError::unreadable(&error))?;
         let own = self.pacemaker.name_and_publication().0.to_owned();
         match named.name.as_str() {
             name if name.starts_with("hpa-cascade") => self.cascade = whole(text)?,
@@ -541,6 +568,37 @@ mod tests {
     use super::*;
 
     #[test]
+    fn a_set_of_a_file_replaces_that_of_the_program() {
+        let mut sets = ModelSets::embedded();
+        let ensemble = include_str!("parameters/ensemble.toml");
+        let longer = ensemble.replace("value = 24.15", "value = 24.3");
+        sets.replace(&longer).unwrap();
+        assert!((sets.ensemble.period.mean.value - 24.3).abs() < 1e-12);
+        for (wrong, told) in [
+            (
+                ensemble.replace("value = 24.15", "value = 26.0"),
+                "23 to 25.5",
+            ),
+            (
+                ensemble.replace("value = 24.15", "value = nan"),
+                "period.mean",
+            ),
+            (ensemble.replace("[commute]", "[comute]"), "comute"),
+            (
+                ensemble.replace("name = \"ensemble\"", "name = \"people\""),
+                "people",
+            ),
+            ("name = 5".to_owned(), "cannot be read"),
+        ] {
+            let error = ModelSets::embedded()
+                .replace(&wrong)
+                .unwrap_err()
+                .to_string();
+            assert!(error.contains(told), "{error}");
+        }
+    }
+
+    #[test]
     fn every_number_has_a_unit_and_a_source() {
         for name in [
             PacemakerName::Hilaire2007,
@@ -551,6 +609,7 @@ mod tests {
             let sets = ModelSets::with_pacemaker(name);
             let list = sets.listed();
             assert!(list.len() > 60, "only {} numbers are listed", list.len());
+            assert_eq!(BindingSet::embedded().listed().len(), 5);
             for (set, key, number) in list {
                 assert!(!number.unit.is_empty(), "{set} {key} has no unit");
                 assert!(!number.source.is_empty(), "{set} {key} has no source");

@@ -60,6 +60,7 @@ impl<'a> Clocks<'a> {
     }
 
     /// Clocks that know their last `CBTmin`, minutes since the epoch.
+    #[must_use]
     pub fn after(mut self, cbtmin_min: &[f64]) -> Self {
         self.readers = cbtmin_min
             .iter()

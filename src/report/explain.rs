@@ -4,6 +4,7 @@ use super::wording;
 use crate::assessment::pack::{self, Pack, Rule};
 use crate::assessment::{Criteria, FindingCode};
 use crate::diagnostic::Code;
+use crate::physiology::{ModelSets, PacemakerName};
 use crate::units::Sourced;
 
 /// An explanation: a head line, then paragraphs.
@@ -30,6 +31,7 @@ pub fn explain(code: &str) -> Option<Explanation> {
         .or_else(|| finding(code))
         .or_else(|| rule(code))
         .or_else(|| rule_pack(code))
+        .or_else(|| parameter_set(code))
 }
 
 /// Every code that can be explained, for advice on a slip.
@@ -43,7 +45,43 @@ pub fn codes() -> Vec<String> {
         let ids = pack.rules.iter().map(|rule| rule.id.clone());
         ids.chain([pack.pack.clone()])
     });
-    diagnostics.chain(findings).chain(rules).collect()
+    let sets = ModelSets::embedded();
+    let sets = sets
+        .publications()
+        .into_iter()
+        .map(|(name, _)| name.to_owned());
+    diagnostics
+        .chain(findings)
+        .chain(rules)
+        .chain(sets)
+        .collect()
+}
+
+/// `ensemble`, `two-process`, `light`, `hpa-cascade` or a pacemaker: every number with unit and source.
+fn parameter_set(code: &str) -> Option<Explanation> {
+    let sets = PacemakerName::ALL
+        .into_iter()
+        .map(ModelSets::with_pacemaker)
+        .find(|sets| sets.publications().iter().any(|(name, _)| *name == code))?;
+    let publications = sets.publications();
+    let (_, publication) = publications.iter().find(|(name, _)| *name == code)?;
+    let mut paragraphs = vec![format!("{}.", sentence(publication))];
+    if code == "ensemble" {
+        paragraphs.push(
+            "Each member is drawn independently in each dimension: intrinsic period (normal), factor on light (log-normal), mid-sleep (normal; when a person's habits are known, around these with the residual spread), sleep need (normal), commute (log-normal), from a fixed low-discrepancy sample, standardised and clipped, the same for the same seed. Unknown morning daylight: each person is lived in both cases, half of the members each."
+                .to_owned(),
+        );
+    }
+    paragraphs.extend(
+        sets.listed()
+            .into_iter()
+            .filter(|(set, _, _)| set == code)
+            .map(|(_, key, number)| format!("{key}: {number}.")),
+    );
+    Some(Explanation {
+        head: format!("{code}: parameter set"),
+        paragraphs,
+    })
 }
 
 fn diagnostic(code: &str) -> Option<Explanation> {

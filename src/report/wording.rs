@@ -288,11 +288,11 @@ pub fn methods() -> Vec<MethodRow> {
         ),
         (
             "Sleep",
-            "Two-process model with published time constants, thresholds calibrated to habitual sleep, process C moved by the displacement of the pacemaker, effort before an alarm, and sleep only off duty, at home and past personal time. Three constants were fitted to published experiments; agreement with these is a fit, not a validation.",
+            "Two-process model with published time constants, thresholds calibrated to habitual sleep, process C moved by the displacement of the pacemaker, effort before an alarm, and sleep only off duty, at home and past personal time. Four constants were fitted to published experiments and one was held; agreement with these is a fit, not a validation.",
         ),
         (
             "Circadian phase",
-            "Pacemaker driven by light and by sleep and waking; CBTmin is read from the polar angle. DLMO is CBTmin minus 7 h and carries about 1 h of spread that is not modelled. Published models of the same week of nights differ by more than 2 h, even in direction: only one model is used here, so the bands are too narrow.",
+            "Pacemaker driven by light and by sleep and waking; CBTmin is read from the polar angle. DLMO is CBTmin minus 7 h and carries about 1 h of spread that is not modelled. Published models of the same week of nights differ by more than 2 h, even in direction: the bands are those of one model and too narrow; with all pacemakers asked for the others stand beside it.",
         ),
         (
             "Cortisol",

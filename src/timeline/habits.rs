@@ -16,6 +16,8 @@ pub struct Habits {
     pub sunrise_h: f64,
     /// Clock hour from which it is dark outdoors, without a latitude.
     pub sunset_h: f64,
+    /// Share of the horizontal daylight that reaches the eye on the way, where the sky is given.
+    pub outdoor_eye_share: f64,
     /// Gaps of at most this many minutes between duties are joined.
     pub join_gap_min: i64,
     /// A shorter gap inside one date is a pause of a split duty, hours.
@@ -64,6 +66,8 @@ pub struct Daylight {
     pub sunrise: Sourced,
     /// To this clock hour.
     pub sunset: Sourced,
+    /// Share of the horizontal daylight at the eye.
+    pub outdoor_eye_share: Sourced,
 }
 
 /// When two duties count as one.
@@ -102,6 +106,7 @@ impl HabitFile {
             commute_h: self.commute.median.value,
             sunrise_h: self.daylight.sunrise.value,
             sunset_h: self.daylight.sunset.value,
+            outdoor_eye_share: self.daylight.outdoor_eye_share.value,
             join_gap_min: self.joining.gap.value as i64,
             split_gap_h: self.joining.split_gap.value,
             split_span_h: self.joining.split_span.value,

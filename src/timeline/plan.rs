@@ -18,8 +18,13 @@ use std::collections::BTreeSet;
 pub enum Place {
     /// On duty; the number is the place of the duty in the timeline.
     Duty(usize),
-    /// Between home and work.
-    Commute,
+    /// On the way to a duty (the number is its place in the timeline) or home from it.
+    Way {
+        /// Which duty.
+        duty: usize,
+        /// Home from it?
+        home: bool,
+    },
     /// At home.
     Home,
 }
@@ -155,8 +160,13 @@ fn segment(timeline: &Timeline, around: &[Around], from: Minute, to: Minute) -> 
     let arriving = previous.is_some_and(|index| from < around[index].arrive_home);
     let place = if on_duty {
         Place::Duty(next)
-    } else if leaving || arriving {
-        Place::Commute
+    } else if leaving {
+        Place::Way {
+            duty: next,
+            home: false,
+        }
+    } else if let Some(duty) = previous.filter(|_| arriving) {
+        Place::Way { duty, home: true }
     } else {
         Place::Home
     };

@@ -172,6 +172,7 @@ fn timeline(condition: &Condition, habits: Habits) -> Timeline {
                 end_clock: clock(end),
                 commute_min: None,
                 light: lux.and_then(|lux| Lux::new(lux).ok()),
+                way_light: [None; 2],
             }
         })
         .collect();

@@ -67,7 +67,7 @@ fn a_third_of_an_hour_of_sleep_changes_few_classes() {
     let roster = read.roster.unwrap();
     let habits = HabitFile::embedded().habits();
     let scene = SiteScene {
-        work_light: None,
+        sky: None,
         place: None,
         habits,
     };
@@ -83,6 +83,7 @@ fn a_third_of_an_hour_of_sleep_changes_few_classes() {
         seed: 1,
         commute_min: 30.0,
         morning_daylight: None,
+        habit: None,
     };
     let simulations = simulate(&timelines, &members(&sets.ensemble, sampling), &sets);
     let packs: Vec<&str> = DEMO_RULES.split(',').collect();

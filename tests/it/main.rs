@@ -13,6 +13,7 @@ mod demo_ward;
 mod dependencies;
 mod documentation;
 mod output_folder;
+mod physiology_options;
 mod pictures;
 mod properties;
 mod reference;

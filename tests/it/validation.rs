@@ -152,8 +152,8 @@ fn misses_stay_in_the_table() {
 #[test]
 fn every_rendering_carries_every_outcome_and_the_caution() {
     let report = report();
-    let renderings: [fn(&ValidationReport, &mut Vec<u8>) -> std::io::Result<()>; 5] =
-        [text, markdown, json, csv, html];
+    type Render = fn(&ValidationReport, &mut Vec<u8>) -> std::io::Result<()>;
+    let renderings: [Render; 5] = [text, markdown, json, csv, html];
     for (index, render) in renderings.into_iter().enumerate() {
         let mut bytes = Vec::new();
         render(report, &mut bytes).unwrap();

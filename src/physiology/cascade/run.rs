@@ -12,7 +12,7 @@ use crate::units::Minute;
 pub struct Rows {
     from: Minute,
     step_min: i64,
-    rows: Vec<[f64; LANES]>,
+    held: Vec<[f64; LANES]>,
 }
 
 impl Rows {
@@ -21,7 +21,7 @@ impl Rows {
         Self {
             from,
             step_min,
-            rows: Vec::new(),
+            held: Vec::new(),
         }
     }
 
@@ -39,17 +39,17 @@ impl Rows {
     pub fn index(&self, minute: Minute) -> Option<usize> {
         let steps = -(self.from - minute).div_euclid(self.step_min);
         let index = usize::try_from(steps).ok()?;
-        (index <= self.rows.len()).then_some(index)
+        (index <= self.held.len()).then_some(index)
     }
 
     /// The row at or just after `minute`.
     pub fn at(&self, minute: Minute) -> Option<&[f64; LANES]> {
-        self.rows.get(self.index(minute)?)
+        self.held.get(self.index(minute)?)
     }
 
     /// The rows held, ascending in time.
     pub fn held(&self) -> &[[f64; LANES]] {
-        &self.rows
+        &self.held
     }
 
     /// Forgets the rows before `minute`, once they are two thirds of those held: moving the rest costs time.
@@ -57,11 +57,11 @@ impl Rows {
         let Some(index) = self.index(minute) else {
             return;
         };
-        if index < 2 * (self.rows.len() - index) {
+        if index < 2 * (self.held.len() - index) {
             return;
         }
         self.from = self.minute(index);
-        self.rows.drain(..index);
+        self.held.drain(..index);
     }
 }
 
@@ -145,8 +145,8 @@ impl<'a> CascadeRun<'a> {
                 .collect();
             self.until = [i64::MIN; LANES];
         }
-        if rows.rows.is_empty() {
-            rows.rows.push(self.state.cortisol);
+        if rows.held.is_empty() {
+            rows.held.push(self.state.cortisol);
         }
         while self.now < to.0 {
             let edge = self.ask_scenes().min(to.0);
@@ -204,7 +204,7 @@ impl Work for Advance<'_> {
             step_lanes(self.cascade, self.state, self.scene, end - *self.now);
             *self.now = end;
             if end == next {
-                self.rows.rows.push(self.state.cortisol);
+                self.rows.held.push(self.state.cortisol);
             }
         }
     }
@@ -222,8 +222,8 @@ fn step_lanes(cascade: &Cascade, state: &mut State, scene: &mut UnitScene, minut
     let (mut to_phase, mut to_shape, mut to_gate) = ([0.0; LANES], [0.0; LANES], [0.0; LANES]);
     let mut decay = scene.gate_decay;
     for _ in 1..minutes {
-        for lane in 0..LANES {
-            decay[lane] *= scene.gate_decay[lane];
+        for (decay, per_half_minute) in decay.iter_mut().zip(&scene.gate_decay) {
+            *decay *= per_half_minute;
         }
     }
     for lane in 0..LANES {

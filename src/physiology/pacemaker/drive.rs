@@ -1,6 +1,6 @@
 //! Light and sleep as they act on the members of a unit between two edges of their lives.
 
-use super::{LANES, LONGEST_STEP_MIN, Pacemaker};
+use super::{LANES, Pacemaker, STEPS};
 use crate::units::Sourced;
 
 /// Activation of the photoreceptors by light.
@@ -85,11 +85,6 @@ pub struct UnitDrive {
     pub(super) arousal: [f64; LANES],
     lux: [f64; LANES],
 }
-
-/// Lengths of step for which the photoreceptors are prepared: 1 to this many minutes.
-const STEPS: usize = 6;
-// The longest step of the integration is prepared.
-const _: () = assert!(STEPS as i64 == LONGEST_STEP_MIN);
 
 impl UnitDrive {
     /// What half a step and a whole step leave of the distance of `n` from its steady share.

@@ -65,7 +65,7 @@ impl Oscillator for &Hannay {
     fn passed(&self, before: [f64; 2], after: [f64; 2]) -> bool {
         let from = lane::within_a_turn(before[1] - self.marker_rad);
         let to = lane::within_a_turn(after[1] - self.marker_rad);
-        (from < 0.0) & (to >= 0.0) & (to - from < 1.0)
+        lane::all([from < 0.0, to >= 0.0, to - from < 1.0])
     }
 }
 

@@ -59,7 +59,7 @@ impl VanDerPol {
         let (cosine, sine) = self.marker;
         let aside = |[x, xc]: [f64; 2]| -xc * cosine - x * sine;
         let ahead = after[0] * cosine - after[1] * sine;
-        (aside(before) < 0.0) & (aside(after) >= 0.0) & (ahead > 0.0)
+        lane::all([aside(before) < 0.0, aside(after) >= 0.0, ahead > 0.0])
     }
 }
 

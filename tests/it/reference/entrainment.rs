@@ -25,7 +25,6 @@ fn melatonin_begins_two_hours_before_bed_in_three_models() {
             };
             let warm = engine.warm_up(&[member], &habits);
             let lead = dlmo_lead_h(&member, warm[0].markers()[0].cbtmin_min);
-            println!("{} bed {bed_h}: DLMO {lead:.2} h before", name.word());
             // Its clock times stand early with ordinary indoor light: shown, not asked.
             if name != PacemakerName::Hannay2019 {
                 assert!(
@@ -47,6 +46,7 @@ fn at_least_thirty_of_the_default_members_are_entrained() {
         seed: 1,
         commute_min: 30.0,
         morning_daylight: None,
+        habit: None,
     };
     let members = members(&sets.ensemble, sampling);
     let warm = Engine::new(&sets).warm_up(&members, &habits);
@@ -67,6 +67,5 @@ fn at_least_thirty_of_the_default_members_are_entrained() {
             }
         }
     }
-    println!("not entrained or out of range: {others:#?}");
     assert!(others.len() <= 2, "{others:#?}");
 }

@@ -28,6 +28,7 @@ fn night_blocks(days: i64) -> Timeline {
                 end_clock: clock(420),
                 commute_min: None,
                 light: None,
+                way_light: [None; 2],
             })
             .collect(),
         days: (0..days)
@@ -51,6 +52,7 @@ fn ensemble(sets: &ModelSets) -> Vec<Member> {
         seed: 1,
         commute_min: 30.0,
         morning_daylight: None,
+        habit: None,
     };
     members(&sets.ensemble, sampling)
 }
@@ -83,7 +85,6 @@ fn eighty_days_of_night_blocks_do_not_depend_on_the_step() {
             *worst = worst.max((a - b).abs());
         }
     }
-    println!("CBTmin {worst_cbtmin:.3} min; mean, peak, nadir {worst:.3?} nmol/L");
     assert!(worst_cbtmin < 1.0, "CBTmin differs by {worst_cbtmin} min");
     assert!(
         worst.iter().all(|off| *off < 1.0),

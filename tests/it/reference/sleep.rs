@@ -46,6 +46,7 @@ fn timeline(duties: &[(i64, i64)]) -> Timeline {
                 end_clock: clock(stop),
                 commute_min: None,
                 light: None,
+                way_light: [None; 2],
             })
             .collect(),
         days,

@@ -459,6 +459,10 @@ impl ModelSets {
             .iter()
             .find(|(name, _)| *name == name_or_text)
             .map_or(name_or_text, |(_, text)| text);
+        // What has no key is the name of a set, and of none that is known.
+        if !text.contains('=') {
+            return Err(ParameterError::Unknown(text.trim().to_owned()));
+        }
         let named: Named =
             toml::from_str(text).map_err(|error| ParameterError::unreadable(&error))?;
         let own = self.pacemaker.name_and_publication().0.to_owned();

@@ -149,10 +149,11 @@ fn misses_stay_in_the_table() {
     }
 }
 
+type Render = fn(&ValidationReport, &mut Vec<u8>) -> std::io::Result<()>;
+
 #[test]
 fn every_rendering_carries_every_outcome_and_the_caution() {
     let report = report();
-    type Render = fn(&ValidationReport, &mut Vec<u8>) -> std::io::Result<()>;
     let renderings: [Render; 5] = [text, markdown, json, csv, html];
     for (index, render) in renderings.into_iter().enumerate() {
         let mut bytes = Vec::new();

@@ -11,7 +11,7 @@
 #[path = "simplex.rs"]
 mod simplex;
 
-use acroshift::physiology::cascade::{Cascade, SleepDebt};
+use acroshift::physiology::cascade::{Cascade, Load};
 use acroshift::physiology::day::{DayReader, Stretch};
 use acroshift::physiology::parameters::CascadeSet;
 use acroshift::physiology::{CortisolDay, Member, MemberTrack, ModelSets};
@@ -128,7 +128,7 @@ fn day_worker(point: &Point) -> ([f64; 24], CortisolDay) {
     let member = Member::mean(&ModelSets::embedded().ensemble, 30.0);
     let track = MemberTrack::habitual(member, -1200.0, 7);
     let span = (Minute(-6 * 1440), Minute(-720));
-    let rows = cascade.rows(&[track], SleepDebt::Off, span, 3);
+    let rows = cascade.rows(&[track], Load::NONE, span, 3);
     let noon_to_noon = Stretch::whole(Minute(-2160), Minute(-720));
     let reader = DayReader::new(3, set.quiescence.share_of_mean.value);
     let day = reader

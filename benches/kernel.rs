@@ -161,6 +161,7 @@ fn night_blocks(days: u32, shift: u32) -> Timeline {
                 commute_min: None,
                 light: None,
                 way_light: [None; 2],
+                stress: 1.0,
             })
             .collect(),
         days: (0..days)

@@ -117,6 +117,7 @@ pub fn screen(
     let scene = SiteScene {
         place: screening.site.place,
         sky: screening.site.sky,
+        stress: screening.site.stress,
         habits: habit_file.habits(),
     };
     let axis = Axis::of(roster, &scene)?;

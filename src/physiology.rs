@@ -29,7 +29,7 @@ use crate::numeric::instruction_set::InstructionSet;
 use crate::numeric::quantile::{Quantiles, quantiles};
 use crate::timeline::{Habits, Timeline};
 use crate::units::Minute;
-use cascade::{Cascade, Rows, SleepDebt};
+use cascade::{Cascade, Load, Rows, SleepDebt, StressSpan};
 use coupled::{CoupledModels, ENTRY, REMEMBERED_DAYS, WarmUnit};
 use day::{DayReader, Stretch};
 use pacemaker::LANES;
@@ -236,7 +236,12 @@ impl Engine {
     fn live_unit(&self, unit: &WarmUnit, timeline: &Timeline) -> UnitPart {
         let tracks = coupled::live(&self.coupled, unit, timeline);
         let reader = &self.reader;
-        let mut run = self.cascade.begin(&tracks, SleepDebt::On, CASCADE_FROM);
+        let stress = stress_spans(timeline);
+        let load = Load {
+            debt: SleepDebt::On,
+            stress: &stress,
+        };
+        let mut run = self.cascade.begin(&tracks, load, CASCADE_FROM);
         let mut rows = Rows::new(CASCADE_FROM, reader.step_min());
         run.advance(ENTRY + RUN_PAST_MIN, &mut rows);
         let habitual = quiescent_references(&tracks, &rows, reader);
@@ -290,6 +295,20 @@ struct UnitPart {
     habitual: Vec<QuiescentReference>,
     /// Values at the points of the curve, one row per point.
     samples: Vec<(Minute, Vec<f64>)>,
+}
+
+/// Duties on which the site assumes another drive of the stress axis.
+fn stress_spans(timeline: &Timeline) -> Vec<StressSpan> {
+    timeline
+        .duties
+        .iter()
+        .filter(|duty| (duty.stress - 1.0).abs() > 1e-9)
+        .map(|duty| StressSpan {
+            from: duty.start,
+            to: duty.end,
+            factor: duty.stress,
+        })
+        .collect()
 }
 
 /// Takes the points of the curve that lie before `to` and were not taken yet.

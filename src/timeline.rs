@@ -7,10 +7,12 @@ pub mod civil;
 pub mod habits;
 pub mod light;
 pub mod plan;
+pub mod stress;
 
 pub use civil::{CivilClock, CivilDay, DaylightSource};
 pub use habits::{HabitFile, Habits};
 pub use light::SiteLight;
+pub use stress::Stress;
 
 use crate::numeric::sun::{Place, Sky, elevation_deg, horizontal_illuminance_lux};
 use crate::roster::{DutyBlock, Roster, WorkerId};
@@ -35,6 +37,8 @@ pub struct DutySpan {
     pub light: Option<Lux>,
     /// Daylight at the eye on the way to and from this duty, where place and sky are known.
     pub way_light: [Option<Lux>; 2],
+    /// Factor of stress on the drive of cortisol on this duty; 1 for none.
+    pub stress: f64,
 }
 
 /// One duty line in elapsed time.
@@ -69,6 +73,8 @@ pub struct SiteScene {
     pub place: Option<Place>,
     /// What the sky is like.
     pub sky: Option<Sky>,
+    /// Stress by kind of duty.
+    pub stress: Stress,
     /// Time around duty.
     pub habits: Habits,
 }
@@ -213,5 +219,6 @@ fn duty_span(block: &DutyBlock, axis: &Axis, scene: &SiteScene) -> DutySpan {
             scene.way_light(block.start - half_way),
             scene.way_light(block.end + half_way),
         ],
+        stress: scene.stress.on(clock(start), end.hours_since(start)),
     }
 }

@@ -2,6 +2,7 @@
 
 use super::zone_name::zone_named;
 use crate::numeric::sun::{Place, Sky};
+use crate::timeline::Stress;
 use crate::timeline::light::{Areas, SiteLight};
 use crate::units::Lux;
 use chrono_tz::Tz;
@@ -21,6 +22,8 @@ pub struct Site {
     pub place: Option<Place>,
     /// What the sky is like on the way.
     pub sky: Option<Sky>,
+    /// Stress by kind of duty.
+    pub stress: Stress,
     /// Median commute each way, minutes.
     pub commute_min: Option<f64>,
     /// Is morning daylight seen on the way home from nights?
@@ -45,12 +48,24 @@ struct SiteFile {
     #[serde(default)]
     sunglasses: bool,
     sky: Option<String>,
+    #[serde(default)]
+    stress: StressTable,
     latitude: Option<f64>,
     longitude: Option<f64>,
     commute_min: Option<f64>,
     morning_daylight: Option<bool>,
     #[serde(default)]
     derogations: BTreeSet<String>,
+}
+
+/// Factors by kind of duty, as they are written.
+#[derive(Debug, Default, Deserialize)]
+#[serde(deny_unknown_fields)]
+struct StressTable {
+    day: Option<f64>,
+    early: Option<f64>,
+    evening: Option<f64>,
+    night: Option<f64>,
 }
 
 /// The site file cannot be used.
@@ -87,6 +102,7 @@ pub fn read(text: &str) -> Result<Site, SiteError> {
         toml::from_str(text).map_err(|error| SiteError::Unreadable(error.to_string()))?;
     let light = light(&file)?;
     let sky = sky(&file)?;
+    let stress = stress(&file.stress)?;
     let zone = file
         .zone
         .map(|name| zone_named(&name).map_err(SiteError::Zone))
@@ -103,6 +119,7 @@ pub fn read(text: &str) -> Result<Site, SiteError> {
         rules: file.rules,
         light,
         sky,
+        stress,
         place: place(file.latitude, file.longitude)?,
         commute_min: file.commute_min,
         morning_daylight: file.morning_daylight,
@@ -170,6 +187,21 @@ fn sky(file: &SiteFile) -> Result<Option<Sky>, SiteError> {
     })
 }
 
+fn stress(table: &StressTable) -> Result<Stress, SiteError> {
+    let factor = |kind: &str, factor: Option<f64>| match factor {
+        Some(factor) if !(0.5..=3.0).contains(&factor) => Err(SiteError::Number(format!(
+            "stress.{kind} must lie in 0.5 to 3, found {factor}"
+        ))),
+        given => Ok(given.unwrap_or(1.0)),
+    };
+    Ok(Stress {
+        day: factor("day", table.day)?,
+        early: factor("early", table.early)?,
+        evening: factor("evening", table.evening)?,
+        night: factor("night", table.night)?,
+    })
+}
+
 fn place(latitude: Option<f64>, longitude: Option<f64>) -> Result<Option<Place>, SiteError> {
     match (latitude, longitude) {
         (None, None) => Ok(None),
@@ -211,6 +243,7 @@ mod tests {
             ("home_day_lux = -1.0", "home_day_lux"),
             ("task_light_lux = nan", "task_light_lux"),
             ("sky = \"clear\"", "latitude"),
+            ("[stress]\nnight = 9.0", "stress.night"),
             ("sky = \"blue\"\nlatitude = 50\nlongitude = 0", "overcast"),
         ] {
             let error = read(wrong).unwrap_err().to_string();

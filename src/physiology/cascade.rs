@@ -83,6 +83,39 @@ pub enum SleepDebt {
     Off,
 }
 
+/// A stretch in which the drive is higher or lower than without stress.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct StressSpan {
+    /// First minute.
+    pub from: Minute,
+    /// First minute after it.
+    pub to: Minute,
+    /// Factor on the drive; 1 without stress.
+    pub factor: f64,
+}
+
+/// What acts on the drive beside phase and sleep.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Load<'a> {
+    /// Lost sleep.
+    pub debt: SleepDebt,
+    /// Stress, ascending and disjoint; no stretch means none.
+    pub stress: &'a [StressSpan],
+}
+
+impl Load<'_> {
+    /// Nothing at all, as in the reference scenarios.
+    pub const NONE: Self = Self {
+        debt: SleepDebt::Off,
+        stress: &[],
+    };
+    /// Lost sleep alone, as in `screen` without a stress setting.
+    pub const DEBT: Self = Self {
+        debt: SleepDebt::On,
+        stress: &[],
+    };
+}
+
 impl Cascade {
     /// The equations with the numbers of a parameter set, on the best instruction set of this machine.
     pub fn new(set: &CascadeSet) -> Self {
@@ -144,11 +177,11 @@ impl Cascade {
     pub fn begin<'a>(
         &'a self,
         tracks: &'a [MemberTrack],
-        debt: SleepDebt,
+        load: Load<'a>,
         from: Minute,
     ) -> CascadeRun<'a> {
         assert!(tracks.len() <= LANES, "a unit holds at most 16 members");
-        CascadeRun::new(self, tracks, debt, from)
+        CascadeRun::new(self, tracks, load, from)
     }
 
     /// Rows of a whole stretch, one every `step_min` minutes from `from` to `to`.
@@ -164,14 +197,14 @@ impl Cascade {
     /// # Example
     ///
     /// ```
-    /// use acroshift::physiology::cascade::{Cascade, SleepDebt};
+    /// use acroshift::physiology::cascade::{Cascade, Load};
     /// use acroshift::physiology::{Member, MemberTrack, ModelSets};
     /// use acroshift::units::Minute;
     /// let sets = ModelSets::embedded();
     /// let cascade = Cascade::new(&sets.cascade);
     /// // Five habitual nights 23-07 with CBTmin at 04:00, up to noon of the day before minute 0.
     /// let track = MemberTrack::habitual(Member::mean(&sets.ensemble, 30.0), -1200.0, 5);
-    /// let rows = cascade.rows(&[track], SleepDebt::Off, (Minute(-6480), Minute(-720)), 2);
+    /// let rows = cascade.rows(&[track], Load::NONE, (Minute(-6480), Minute(-720)), 2);
     /// // At 08:00 of the last morning the curve is near its peak of 428 nmol/L.
     /// let eight = rows.at(Minute(-960)).expect("inside the stretch")[0];
     /// assert!((eight - 427.4).abs() < 1.0);
@@ -183,12 +216,12 @@ impl Cascade {
     pub fn rows(
         &self,
         tracks: &[MemberTrack],
-        debt: SleepDebt,
+        load: Load<'_>,
         (from, to): (Minute, Minute),
         step_min: i64,
     ) -> Rows {
         let mut rows = Rows::new(from, step_min);
-        self.begin(tracks, debt, from).advance(to, &mut rows);
+        self.begin(tracks, load, from).advance(to, &mut rows);
         rows
     }
 

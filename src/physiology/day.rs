@@ -106,14 +106,14 @@ impl DayReader {
     /// # Example
     ///
     /// ```
-    /// use acroshift::physiology::cascade::{Cascade, SleepDebt};
+    /// use acroshift::physiology::cascade::{Cascade, Load};
     /// use acroshift::physiology::day::{DayReader, Stretch};
     /// use acroshift::physiology::{Member, MemberTrack, ModelSets};
     /// use acroshift::units::Minute;
     /// let sets = ModelSets::embedded();
     /// let cascade = Cascade::new(&sets.cascade);
     /// let track = MemberTrack::habitual(Member::mean(&sets.ensemble, 30.0), -1200.0, 5);
-    /// let rows = cascade.rows(&[track], SleepDebt::Off, (Minute(-6480), Minute(-720)), 2);
+    /// let rows = cascade.rows(&[track], Load::NONE, (Minute(-6480), Minute(-720)), 2);
     /// let noon_to_noon = Stretch::whole(Minute(-2160), Minute(-720));
     /// let days = DayReader::new(2, 0.6).read(&rows, 1, noon_to_noon).expect("the rows hold the day");
     /// assert!((days[0].mean - 210.6).abs() < 1.0);

@@ -2,7 +2,7 @@
 
 use super::experiment::{Baseline, Condition, Cycle, Experiment, State};
 use super::quantity::{self, Reading};
-use crate::physiology::cascade::{Cascade, SleepDebt};
+use crate::physiology::cascade::{Cascade, Load};
 use crate::physiology::day::DayReader;
 use crate::physiology::pacemaker::LANES;
 use crate::physiology::unit::{Clocks, Life, Marker, Scene};
@@ -62,7 +62,7 @@ fn read_all(
     for unit in tracks.chunks(LANES) {
         let rows = reads_cortisol(condition).then(|| {
             let span = (cortisol_from, last_minute(condition));
-            cascade.rows(unit, SleepDebt::On, span, CORTISOL_STEP_MIN)
+            cascade.rows(unit, Load::DEBT, span, CORTISOL_STEP_MIN)
         });
         for (values, quantity) in values.iter_mut().zip(&condition.quantity) {
             values.extend(quantity::read(quantity.reading, unit, rows.as_ref(), &days));
@@ -173,6 +173,7 @@ fn timeline(condition: &Condition, habits: Habits) -> Timeline {
                 commute_min: None,
                 light: lux.and_then(|lux| Lux::new(lux).ok()),
                 way_light: [None; 2],
+                stress: 1.0,
             }
         })
         .collect();

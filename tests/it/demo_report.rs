@@ -68,6 +68,7 @@ fn a_third_of_an_hour_of_sleep_changes_few_classes() {
     let habits = HabitFile::embedded().habits();
     let scene = SiteScene {
         sky: None,
+        stress: acroshift::timeline::Stress::default(),
         place: None,
         habits,
     };

@@ -1,8 +1,9 @@
-//! The drive of one member: circadian shape, sleep gate, waking pulse, sleep-debt term.
+//! The drive of one member: circadian shape, sleep gate, waking pulse, sleep-debt term, stress.
 //!
 //! Between two edges (onset and end of a sleep, end of the gate's full depth, end of the pulse, `CBTmin`, evening) only the phase runs on.
 
-use super::{Cascade, SleepDebt};
+use super::StressSpan;
+use super::{Cascade, Load};
 use crate::physiology::track::MemberTrack;
 use crate::units::Minute;
 
@@ -17,7 +18,7 @@ pub(super) struct DriveScene {
     pub(super) gate_decay: f64,
     /// Waking pulse.
     pub(super) pulse: f64,
-    /// Sleep-debt factor.
+    /// Stress and sleep-debt factors.
     pub(super) factor: f64,
     /// First minute at which the scene must be asked for again.
     pub(super) until: i64,
@@ -38,6 +39,8 @@ pub(super) struct DriveReader<'a> {
     cycle: usize,
     /// Debt multiplier by cycle; empty when the term is off.
     debt: Vec<f64>,
+    /// Stretches of a higher or lower drive, ascending.
+    stress: &'a [StressSpan],
     /// A new `CBTmin` counts from the next multiple of this many minutes on: phase is continuous there.
     step_min: i64,
 }
@@ -46,7 +49,7 @@ impl<'a> DriveReader<'a> {
     pub(super) fn new(
         cascade: &'a Cascade,
         track: &'a MemberTrack,
-        debt: SleepDebt,
+        load: Load<'a>,
         (from, step_min): (Minute, i64),
     ) -> Self {
         let sleep = track.sleeps.partition_point(|s| s.to <= from);
@@ -57,7 +60,8 @@ impl<'a> DriveReader<'a> {
             weight: 0.0,
             pulse: (0.0, i64::MIN),
             cycle: 0,
-            debt: debt_by_cycle(cascade, track, debt),
+            debt: debt_by_cycle(cascade, track, load.debt),
+            stress: load.stress,
             step_min,
         };
         reader.weigh();
@@ -111,7 +115,17 @@ impl<'a> DriveReader<'a> {
         } else {
             0.0
         };
-        let factor = if self.debt.is_empty() {
+        let next_stress = self.stress.partition_point(|span| span.to.0 <= minute);
+        let stress = self.stress.get(next_stress).map_or(1.0, |span| {
+            edge_at(span.from.0);
+            edge_at(span.to.0);
+            if span.from.0 <= minute {
+                span.factor
+            } else {
+                1.0
+            }
+        });
+        let debt = if self.debt.is_empty() {
             1.0
         } else {
             let numbers = &self.cascade.debt;
@@ -132,7 +146,7 @@ impl<'a> DriveReader<'a> {
             gate,
             gate_decay,
             pulse,
-            factor,
+            factor: stress * debt,
             until,
         }
     }
@@ -188,8 +202,8 @@ impl<'a> DriveReader<'a> {
 }
 
 /// `q(L)` of each cycle; L = sleep need minus sleep in the 24 h that end 13 h after `CBTmin`. Empty when the term is off.
-fn debt_by_cycle(cascade: &Cascade, track: &MemberTrack, debt: SleepDebt) -> Vec<f64> {
-    if debt == SleepDebt::Off {
+fn debt_by_cycle(cascade: &Cascade, track: &MemberTrack, debt: super::SleepDebt) -> Vec<f64> {
+    if debt == super::SleepDebt::Off {
         return Vec::new();
     }
     let numbers = &cascade.debt;

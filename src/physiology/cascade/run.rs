@@ -1,7 +1,7 @@
 //! The integration loop of the cascade: sixteen members side by side, steps that end on the edges of their drives.
 
 use super::drive::DriveReader;
-use super::{Cascade, SleepDebt};
+use super::{Cascade, Load};
 use crate::numeric::instruction_set::Work;
 use crate::physiology::pacemaker::LANES;
 use crate::physiology::track::MemberTrack;
@@ -70,7 +70,7 @@ impl Rows {
 pub struct CascadeRun<'a> {
     cascade: &'a Cascade,
     tracks: &'a [MemberTrack],
-    debt: SleepDebt,
+    load: Load<'a>,
     now: i64,
     readers: Vec<DriveReader<'a>>,
     until: [i64; LANES],
@@ -103,14 +103,14 @@ impl<'a> CascadeRun<'a> {
     pub(super) fn new(
         cascade: &'a Cascade,
         tracks: &'a [MemberTrack],
-        debt: SleepDebt,
+        load: Load<'a>,
         from: Minute,
     ) -> Self {
         let [crh, acth, cortisol] = cascade.start;
         Self {
             cascade,
             tracks,
-            debt,
+            load,
             now: from.0,
             readers: Vec::new(),
             until: [i64::MAX; LANES],
@@ -141,7 +141,7 @@ impl<'a> CascadeRun<'a> {
             self.readers = self
                 .tracks
                 .iter()
-                .map(|track| DriveReader::new(self.cascade, track, self.debt, start))
+                .map(|track| DriveReader::new(self.cascade, track, self.load, start))
                 .collect();
             self.until = [i64::MIN; LANES];
         }

@@ -4,7 +4,7 @@
 //! with the gate of the biological night for S2, S4 and S6. Tolerance stated there: 1 nmol/L and 3 min.
 
 use acroshift::physiology::cascade::Rows;
-use acroshift::physiology::cascade::{Cascade, SleepDebt};
+use acroshift::physiology::cascade::{Cascade, Load, SleepDebt, StressSpan};
 use acroshift::physiology::day::{DayReader, Stretch};
 use acroshift::physiology::{CortisolDay, Member, MemberTrack, ModelSets, SleepEpisode};
 use acroshift::units::Minute;
@@ -19,6 +19,9 @@ struct Scenario {
     pulse: bool,
     debt: SleepDebt,
     step_min: i64,
+    /// Gates sleep at any phase, as in the first form of the model.
+    any_phase: bool,
+    stress: Vec<StressSpan>,
 }
 
 impl Scenario {
@@ -29,6 +32,8 @@ impl Scenario {
             pulse: true,
             debt: SleepDebt::Off,
             step_min: 1,
+            any_phase: false,
+            stress: Vec::new(),
         }
     }
 
@@ -36,6 +41,9 @@ impl Scenario {
         let mut sets = ModelSets::embedded();
         if !self.pulse {
             sets.cascade.waking.pulse.value = 0.0;
+        }
+        if self.any_phase {
+            sets.cascade.gate.biological_night.value = 0.0;
         }
         let cascade = Cascade::new(&sets.cascade);
         let track = MemberTrack {
@@ -56,7 +64,11 @@ impl Scenario {
             habitual_cbtmin_min: 240.0,
         };
         let span = (Minute(0), Minute(days * DAY));
-        cascade.rows(&[track], self.debt, span, self.step_min)
+        let load = Load {
+            debt: self.debt,
+            stress: &self.stress,
+        };
+        cascade.rows(&[track], load, span, self.step_min)
     }
 }
 
@@ -215,12 +227,10 @@ fn the_first_night_shift_agrees_with_the_gate_of_the_biological_night() {
 
 #[test]
 fn a_fully_adapted_worker_is_a_day_worker_nine_hours_later() {
+    let sleeps = (0..8).map(|d| (d * DAY + 480, d * DAY + 960)).collect();
     let scenario = Scenario {
-        sleeps: (0..8).map(|d| (d * DAY + 480, d * DAY + 960)).collect(),
         cbtmin: Box::new(|_| 780.0),
-        pulse: true,
-        debt: SleepDebt::Off,
-        step_min: 1,
+        ..Scenario::of(sleeps)
     };
     let found = day(&scenario.run(7), 5 * DAY);
     check(
@@ -262,8 +272,7 @@ fn an_eight_hour_advance_of_one_sleep_agrees_with_the_reference() {
 }
 
 /// Five nights with `CBTmin` 33 min later each day from 23:00 of day 4 (S6); `CBTmin` of day d solves t = 240 + 33 (t - start) / 1440.
-#[test]
-fn five_nights_with_a_moving_clock_agree_with_the_reference() {
+fn five_nights() -> Scenario {
     let start = Minute(5 * DAY - 60).as_f64();
     let cbtmin = move |day: i64| {
         let midnight = Minute(day * DAY).as_f64();
@@ -275,29 +284,97 @@ fn five_nights_with_a_moving_clock_agree_with_the_reference() {
     };
     let mut sleeps = nights_then(5 * DAY - 60, &[]);
     sleeps.extend((5..11).map(|d| (d * DAY + 480, d * DAY + 900)));
-    let scenario = Scenario {
-        sleeps,
+    Scenario {
         cbtmin: Box::new(cbtmin),
-        pulse: true,
-        debt: SleepDebt::Off,
-        step_min: 1,
-    };
+        ..Scenario::of(sleeps)
+    }
+}
+
+#[track_caller]
+fn check_nights(scenario: &Scenario, expected: [&str; 5]) {
     let values = scenario.run(10);
-    let expected = [
-        "345.4 09:51 67.1 23:48 217.9 136.5 10:16",
-        "345.4 10:25 67.3 00:00 218.2 136.6 10:51",
-        "334.4 10:52 67.1 00:22 216.3 133.0 11:25",
-        "314.3 13:36 67.1 00:56 212.7 126.7 12:03",
-        "317.5 15:40 67.1 01:29 209.3 121.4 12:44",
-    ];
     for (night, row) in (0..).zip(expected) {
         let from = (5 + night) * DAY;
-        check(
-            &format!("S6 n{}", night + 1),
-            &day(&values, from),
-            from,
-            row,
-        );
+        let found = day(&values, from);
+        check(&format!("S6 n{}", night + 1), &found, from, row);
+    }
+}
+
+#[test]
+fn five_nights_with_a_moving_clock_agree_with_the_reference() {
+    check_nights(
+        &five_nights(),
+        [
+            "345.4 09:51 67.1 23:48 217.9 136.5 10:16",
+            "345.4 10:25 67.3 00:00 218.2 136.6 10:51",
+            "334.4 10:52 67.1 00:22 216.3 133.0 11:25",
+            "314.3 13:36 67.1 00:56 212.7 126.7 12:03",
+            "317.5 15:40 67.1 01:29 209.3 121.4 12:44",
+        ],
+    );
+}
+
+/// The first form of the gate lowers the drive in any sleep: cortisol.md 1.9, where S6 prints two nights whole and amplitude and acrophase of all.
+#[test]
+fn the_gate_of_any_phase_agrees_with_the_reference() {
+    let sleeps = nights_then(
+        5 * DAY - 60,
+        &[
+            (5 * DAY + 480, 5 * DAY + 900),
+            (6 * DAY + 480, 6 * DAY + 900),
+        ],
+    );
+    let any_phase = |scenario: Scenario| Scenario {
+        any_phase: true,
+        ..scenario
+    };
+    let found = day(&any_phase(Scenario::of(sleeps)).run(7), 5 * DAY);
+    let row = "335.8 08:07 67.4 23:16 194.4 104.0 09:35";
+    check("S2 any phase", &found, 5 * DAY, row);
+    let inverted = (0..8).map(|d| (d * DAY + 660, d * DAY + 1140)).collect();
+    let found = day(&any_phase(Scenario::of(inverted)).run(7), 5 * DAY);
+    let row = "345.3 09:38 72.8 23:34 203.1 119.8 09:16";
+    check("S4 any phase", &found, 5 * DAY, row);
+    let values = any_phase(five_nights()).run(10);
+    let nights = [
+        (100.7, "09:52"),
+        (98.4, "10:38"),
+        (97.7, "11:26"),
+        (98.9, "12:14"),
+        (101.8, "13:01"),
+    ];
+    for (night, (amplitude, acrophase)) in (0..).zip(nights) {
+        let from = (5 + night) * DAY;
+        let found = day(&values, from);
+        check_value("S6 amplitude", found.amplitude, amplitude);
+        let at = Minute::nearest(Minute(from).as_f64() + found.acrophase_min);
+        check_time("S6 acrophase", at, acrophase);
+    }
+}
+
+/// Stress all day long: mean, peak and nadir of the day worker by the factor on the drive.
+#[test]
+fn stress_raises_the_curve_as_the_reference_does() {
+    for (factor, [mean, peak, nadir]) in [
+        (0.8, [184.8, 377.4, 46.1]),
+        (1.1, [223.0, 452.6, 61.0]),
+        (1.25, [241.1, 489.6, 67.9]),
+        (1.5, [270.7, 551.6, 78.6]),
+        (2.0, [328.8, 677.9, 97.5]),
+        (3.0, [445.4, 940.5, 127.0]),
+    ] {
+        let scenario = Scenario {
+            stress: vec![StressSpan {
+                from: Minute(0),
+                to: Minute(6 * DAY),
+                factor,
+            }],
+            ..Scenario::of(nights(7))
+        };
+        let found = day(&scenario.run(6), NOON_4);
+        check_value("mean", found.mean, mean);
+        check_value("peak", found.peak, peak);
+        check_value("nadir", found.nadir, nadir);
     }
 }
 

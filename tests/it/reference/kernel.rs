@@ -29,6 +29,7 @@ fn night_blocks(days: i64) -> Timeline {
                 commute_min: None,
                 light: None,
                 way_light: [None; 2],
+                stress: 1.0,
             })
             .collect(),
         days: (0..days)

@@ -47,6 +47,7 @@ fn timeline(duties: &[(i64, i64)]) -> Timeline {
                 commute_min: None,
                 light: None,
                 way_light: [None; 2],
+                stress: 1.0,
             })
             .collect(),
         days,

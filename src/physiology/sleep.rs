@@ -68,7 +68,7 @@ impl SleepModel {
             lowering: set.effort.lowering.value,
             share_at_stake: set.effort.share_at_stake.value,
             shortest_min: Minute::nearest(set.effort.shortest_sleep.value * 60.0).0,
-            reach: c.amplitude.value * sines.iter().map(|sine| sine.abs()).sum::<f64>(),
+            reach: c.amplitude.value * farthest(&process_c),
             process_c,
             grid_min,
             rise: libm::exp(-Minute(grid_min).as_f64() / tau_rise_min),
@@ -125,6 +125,15 @@ impl SleepModel {
         let bed = (1.0 - a) / (1.0 - a * e);
         (bed, bed * e)
     }
+}
+
+/// Farthest value of a table from 0, with room for what lies between its entries.
+fn farthest(table: &PeriodicTable) -> f64 {
+    const ROOM: f64 = 1.001;
+    (0..1440)
+        .map(|minute| table.at(Minute(minute).as_f64()).abs())
+        .fold(0.0, f64::max)
+        * ROOM
 }
 
 /// What the surroundings allow for a while.

@@ -43,7 +43,7 @@ pub struct WarmUnit {
 }
 
 impl WarmUnit {
-    /// The members of the unit, at most [`LANES`].
+    /// The members of the unit, at most 16.
     pub fn members(&self) -> &[Member] {
         &self.members
     }

@@ -5,6 +5,7 @@
 
 pub mod clock_text;
 pub mod long_table;
+pub mod samples;
 pub mod site;
 pub mod table;
 pub mod text;

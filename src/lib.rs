@@ -29,6 +29,8 @@ pub mod physiology;
 
 pub mod validation;
 
+pub mod rhythm;
+
 pub mod assessment;
 
 pub mod report;

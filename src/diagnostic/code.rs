@@ -76,6 +76,12 @@ codes! {
     MissingWorker "K15" "missing-worker" Error "the row has no worker";
     BadBreak "K20" "break-too-long" Error "the break is no number of minutes shorter than the shift";
     BadCommute "K22" "commute-unreadable" Error "the commute is no number of minutes up to 240";
+    SampleUnitMissing "M01" "sample-unit-missing" Fatal "samples need a unit that is read: nmol/L, ug/dL or ng/mL";
+    SampleUnitsMixed "M02" "sample-units-mixed" Fatal "a table of samples holds two units";
+    SampleValue "M03" "sample-value-unusable" Error "the value is no concentration above 0";
+    SampleTwice "M04" "sample-time-repeated" Error "a subject has two samples at one time; the first is used";
+    SampleMatrix "M05" "sample-matrix-questioned" Warning "a salivary value lies in the range of serum";
+    BelowLimit "M06" "below-detection-limit" Note "a sample lies below the limit of detection; half of the limit is used";
     Unsupported "X10" "unsupported-format" Fatal "the format of the file is not supported";
     SeveralTables "X09" "several-tables" Fatal "the workbook has several sheets with data";
     Unreadable "F01" "unreadable-file" Fatal "the file cannot be read";

@@ -4,5 +4,6 @@ mod cascade;
 mod entrainment;
 mod kernel;
 mod pacemaker;
+mod rhythm;
 mod sleep;
 mod sun;

@@ -1,0 +1,188 @@
+//! A table of subjects: each one's rhythm and saliva measures, and the population.
+
+use super::cosinor::{Cosinor, Design, Observation, Refusal, fit};
+use super::populations::{Population, Vector, population};
+use super::saliva::{Areas, RESPONSE_MIN, SalivaSample, SlopeKind, Timing, areas, slope, timing};
+
+/// One sample of a subject.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct SubjectSample {
+    /// Hours since midnight of the first date.
+    pub time_h: f64,
+    /// nmol/L.
+    pub nmol_l: f64,
+    /// Below the limit of detection.
+    pub below_limit: bool,
+    /// Waking of that day, in the same hours.
+    pub waking_h: Option<f64>,
+}
+
+/// What is asked of a table.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Plan {
+    /// Periods and level.
+    pub design: Design,
+    /// Fit the natural logarithm: geometric MESOR, peak over trough.
+    pub log: bool,
+    /// Hour of the clock from which phases are counted, 0 for midnight.
+    pub reference_h: f64,
+}
+
+/// One subject's rhythm.
+#[derive(Debug, Clone, PartialEq)]
+pub struct SubjectRhythm {
+    /// Name.
+    pub subject: String,
+    /// Samples used.
+    pub n: usize,
+    /// Of these below the limit of detection.
+    pub below_limit: usize,
+    /// Days with samples.
+    pub days: usize,
+    /// Fit, or why there is none.
+    pub cosinor: Result<Cosinor, Refusal>,
+    /// Saliva measures by day.
+    pub saliva: Vec<SalivaDay>,
+}
+
+impl SubjectRhythm {
+    /// MESOR in the unit of the values: geometric on the log scale.
+    pub fn mesor_nmol_l(&self, plan: &Plan) -> Option<f64> {
+        let mesor = self.cosinor.as_ref().ok()?.mesor;
+        Some(if plan.log { libm::exp(mesor) } else { mesor })
+    }
+}
+
+/// Saliva measures of one day, with the timing of its first sample.
+#[derive(Debug, Clone, PartialEq)]
+pub struct SalivaDay {
+    /// Number of the day from the first, 0.
+    pub day: i64,
+    /// Samples of the day.
+    pub samples: usize,
+    /// First sample after waking, minutes.
+    pub first_delay_min: f64,
+    /// How the first sample was kept.
+    pub first: Timing,
+    /// Areas of the first hour after waking: the waking response.
+    pub response: Option<Areas>,
+    /// Areas of the whole day.
+    pub whole: Option<Areas>,
+    /// Slopes by kind.
+    pub slopes: Vec<(SlopeKind, f64)>,
+}
+
+/// A table of rhythms.
+#[derive(Debug, Clone, PartialEq)]
+pub struct RhythmTable {
+    /// What was asked.
+    pub plan: Plan,
+    /// By subject.
+    pub subjects: Vec<SubjectRhythm>,
+    /// Of the first period, where at least three subjects have a fit.
+    pub population: Option<Population>,
+}
+
+/// Rhythms of subjects and their population.
+///
+/// # Example
+///
+/// ```
+/// use acroshift::rhythm::subjects::{analyse, Plan, SubjectSample};
+/// use acroshift::rhythm::Design;
+/// let samples: Vec<SubjectSample> = [(7.0, 14.0), (11.0, 7.0), (15.0, 5.0), (19.0, 3.0), (23.0, 2.0)]
+///     .map(|(time_h, nmol_l)| SubjectSample { time_h, nmol_l, below_limit: false, waking_h: None })
+///     .to_vec();
+/// let plan = Plan { design: Design::of(&[24.0]), log: true, reference_h: 0.0 };
+/// let table = analyse(&[("A".to_owned(), samples)], plan);
+/// assert!(table.subjects[0].cosinor.is_ok() && table.population.is_none());
+/// ```
+pub fn analyse(subjects: &[(String, Vec<SubjectSample>)], plan: Plan) -> RhythmTable {
+    let subjects: Vec<SubjectRhythm> = subjects
+        .iter()
+        .map(|(name, samples)| one(name, samples, &plan))
+        .collect();
+    let vectors: Vec<Vector> = subjects
+        .iter()
+        .filter_map(|subject| subject.cosinor.as_ref().ok())
+        .map(|cosinor| Vector {
+            mesor: cosinor.mesor,
+            beta: cosinor.components[0].beta,
+            gamma: cosinor.components[0].gamma,
+        })
+        .collect();
+    RhythmTable {
+        population: population(&vectors, plan.design.level),
+        subjects,
+        plan,
+    }
+}
+
+fn one(name: &str, samples: &[SubjectSample], plan: &Plan) -> SubjectRhythm {
+    let observations: Vec<Observation> = samples
+        .iter()
+        .map(|sample| Observation {
+            time_h: sample.time_h - plan.reference_h,
+            value: if plan.log {
+                libm::log(sample.nmol_l)
+            } else {
+                sample.nmol_l
+            },
+            weight: 1.0,
+        })
+        .collect();
+    SubjectRhythm {
+        subject: name.to_owned(),
+        n: samples.len(),
+        below_limit: samples.iter().filter(|s| s.below_limit).count(),
+        days: days(samples).len(),
+        cosinor: fit(&observations, &plan.design),
+        saliva: days(samples)
+            .into_iter()
+            .filter_map(|day| saliva_day(&day))
+            .collect(),
+    }
+}
+
+/// Samples by waking where it is given, else by date.
+fn days(samples: &[SubjectSample]) -> Vec<Vec<SubjectSample>> {
+    let day = |sample: &SubjectSample| {
+        let start = sample.waking_h.unwrap_or(sample.time_h);
+        (start / 24.0).floor()
+    };
+    samples
+        .chunk_by(|a, b| (day(a) - day(b)).abs() < 0.5)
+        .map(<[SubjectSample]>::to_vec)
+        .collect()
+}
+
+#[expect(clippy::cast_possible_truncation, reason = "a day number is small")]
+fn saliva_day(samples: &[SubjectSample]) -> Option<SalivaDay> {
+    let waking_h = samples.iter().find_map(|sample| sample.waking_h)?;
+    let after: Vec<SalivaSample> = samples
+        .iter()
+        .map(|sample| SalivaSample {
+            after_waking_min: 60.0 * (sample.time_h - waking_h),
+            nmol_l: sample.nmol_l,
+        })
+        .collect();
+    let first_delay_min = after.first()?.after_waking_min;
+    let early: Vec<SalivaSample> = after
+        .iter()
+        .copied()
+        .filter(|sample| sample.after_waking_min <= RESPONSE_MIN + 1e-9)
+        .collect();
+    let slopes = SlopeKind::ALL
+        .into_iter()
+        .filter_map(|kind| Some((kind, slope(&after, kind)?)))
+        .collect();
+    Some(SalivaDay {
+        day: (waking_h / 24.0).floor() as i64,
+        samples: after.len(),
+        first_delay_min,
+        first: timing(first_delay_min),
+        response: areas(&early),
+        whole: areas(&after),
+        slopes,
+    })
+}

@@ -4,6 +4,7 @@ mod arguments;
 mod explain;
 mod output;
 mod parameters;
+mod rhythm;
 mod screen;
 mod validate;
 
@@ -75,6 +76,7 @@ pub(crate) fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
     };
     let result = match &arguments.command {
         Command::Screen(options) => screen::run(options),
+        Command::Rhythm(options) => rhythm::run(options),
         Command::Validate(options) => validate::run(options),
         Command::Explain(options) => explain::run(options),
     };

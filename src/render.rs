@@ -9,6 +9,7 @@ pub mod html;
 pub mod json;
 #[cfg(feature = "parquet")]
 pub mod parquet;
+pub mod rhythm;
 pub mod svg;
 pub mod terminal;
 pub mod validation;

@@ -10,6 +10,11 @@ const EXAMPLE: &str = "Example, on the demo roster:
 
 Exit codes: 0 done; 1 findings at or above --fail-on; 2 wrong usage; 3 input errors; 4 the computer refused.";
 
+const RHYTHM_EXAMPLE: &str = "Example, the saliva of three invented workers:
+  acroshift rhythm rosters/tern-quay-saliva.csv --periods 24,12 --log
+
+Exit codes: 0 done; 2 wrong usage; 3 input errors.";
+
 const VALIDATE_EXAMPLE: &str = "Example, the table of VALIDATION.md:
   acroshift validate --format markdown";
 
@@ -31,6 +36,9 @@ pub(crate) enum Command {
     /// Screen rosters: which recovery windows are compressed, and why.
     #[command(after_help = EXAMPLE)]
     Screen(ScreenOptions),
+    /// Fit the rhythm of measured cortisol: cosinor, saliva measures, population.
+    #[command(after_help = RHYTHM_EXAMPLE)]
+    Rhythm(RhythmOptions),
     /// Run published experiments through the models: observed against modelled, misses included.
     #[command(after_help = VALIDATE_EXAMPLE)]
     Validate(ValidateOptions),
@@ -45,6 +53,50 @@ pub(crate) struct ExplainOptions {
     /// A code as the program prints it: T21, compressed-rest, uk-daily-rest, uk-wtr.
     #[arg(value_name = "CODE")]
     pub(crate) code: String,
+}
+
+/// Options of `rhythm`.
+#[derive(Debug, Args)]
+pub(crate) struct RhythmOptions {
+    /// Table of samples: subject, time, value, unit and, if known, matrix, assay, waking_time; - reads standard input.
+    #[arg(value_name = "SAMPLES")]
+    pub(crate) samples: PathBuf,
+
+    /// Periods in hours, separated by commas.
+    #[arg(long, value_name = "H,...", value_delimiter = ',', default_values_t = [24.0])]
+    pub(crate) periods: Vec<f64>,
+
+    /// Fit the natural logarithm: geometric MESOR, peak over trough.
+    #[arg(long)]
+    pub(crate) log: bool,
+
+    /// Hour from which phases are counted: 0 for midnight, or a person's mid-sleep.
+    #[arg(
+        long,
+        value_name = "H",
+        default_value_t = 0.0,
+        allow_negative_numbers = true
+    )]
+    pub(crate) reference: f64,
+
+    /// Fit the rest when some rows cannot be used.
+    #[arg(long)]
+    pub(crate) allow_partial: bool,
+
+    /// What is printed on standard output.
+    #[arg(long, value_enum, default_value_t = RhythmFormat::Text)]
+    pub(crate) format: RhythmFormat,
+}
+
+/// What is printed on standard output.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, ValueEnum)]
+pub(crate) enum RhythmFormat {
+    /// Lines for the terminal.
+    Text,
+    /// Schema acroshift.rhythm/1.
+    Json,
+    /// One row per subject and period.
+    Csv,
 }
 
 /// Options of `validate`.

@@ -55,7 +55,10 @@ fn allowed() -> BTreeMap<&'static str, &'static [&'static str]> {
                 "units",
             ][..],
         ),
-        ("render", &["report", "validation", "units"][..]),
+        (
+            "render",
+            &["report", "validation", "rhythm", "numeric", "units"][..],
+        ),
     ])
 }
 

@@ -2,9 +2,11 @@
 
 mod arguments;
 mod explain;
+mod files;
 mod output;
 mod parameters;
 mod rhythm;
+mod sample;
 mod screen;
 mod validate;
 
@@ -76,6 +78,7 @@ pub(crate) fn run(arguments: impl IntoIterator<Item = OsString>) -> ExitCode {
     };
     let result = match &arguments.command {
         Command::Screen(options) => screen::run(options),
+        Command::Sample(options) => sample::run(options),
         Command::Rhythm(options) => rhythm::run(options),
         Command::Validate(options) => validate::run(options),
         Command::Explain(options) => explain::run(options),

@@ -31,6 +31,8 @@ pub mod validation;
 
 pub mod rhythm;
 
+pub mod biological_time;
+
 pub mod assessment;
 
 pub mod report;
@@ -38,8 +40,10 @@ pub mod report;
 pub mod render;
 
 use assessment::{AssessmentInput, Criteria, Pack};
+use biological_time::{NotPlaced, Placed, Specimen, Stated};
 use intake::site::Site;
 use physiology::light::LightScenes;
+use physiology::parameters::SampleBandSet;
 use physiology::{ModelSets, PacemakerName, Sampling};
 use report::pacemakers::Beside;
 use report::{Audience, ReportInput, RunFacts, ScreenReport};
@@ -102,10 +106,6 @@ pub fn screen(
     screening: &Screening,
 ) -> Option<ScreenReport> {
     let habit_file = HabitFile::embedded();
-    let sets = &ModelSets {
-        light: LightScenes::at_site(&screening.sets.light, &screening.site.light),
-        ..screening.sets.clone()
-    };
     let criteria = Criteria::embedded();
 
     // A commute is the worker's own: the planner's generic adult does not have it.
@@ -116,38 +116,26 @@ pub fn screen(
     let roster = generic.as_ref().unwrap_or(roster);
 
     // Civil time becomes elapsed time.
-    let scene = SiteScene {
-        place: screening.site.place,
-        sky: screening.site.sky,
-        stress: screening.site.stress,
-        habits: habit_file.habits(),
-    };
-    let axis = Axis::of(roster, &scene)?;
+    let Setting {
+        sets,
+        scene,
+        axis,
+        members,
+    } = &setting(roster, screening)?;
     let lines = roster::lines(roster, scene.habits.join_gap_min);
     let timelines: Vec<Timeline> = lines
         .iter()
-        .map(|line| timeline::timeline(roster, line.workers[0], &axis, &scene))
+        .map(|line| timeline::timeline(roster, line.workers[0], axis, scene))
         .collect();
 
     // Each line is lived by the same ensemble.
-    let sampling = Sampling {
-        members: screening.members,
-        seed: screening.seed,
-        commute_min: screening
-            .site
-            .commute_min
-            .unwrap_or(scene.habits.commute_h * 60.0),
-        morning_daylight: screening.site.morning_daylight,
-        habit: None,
-    };
-    let members = physiology::members(&sets.ensemble, sampling);
-    let simulations = physiology::simulate(&timelines, &members, sets);
-    let beside = lived_beside(screening, sets, &timelines, &members);
+    let simulations = physiology::simulate(&timelines, members, sets);
+    let beside = lived_beside(screening, sets, &timelines, members);
 
     // Law, advice and model are held against the windows, side by side.
     let assessment = assessment::assess(&AssessmentInput {
         roster,
-        axis: &axis,
+        axis,
         habits: &scene.habits,
         lines: &lines,
         simulations: &simulations,
@@ -160,7 +148,7 @@ pub fn screen(
     Some(report::build(&ReportInput {
         audience: screening.audience,
         roster,
-        axis: &axis,
+        axis,
         simulations: &simulations,
         assessment: &assessment,
         packs: &screening.packs,
@@ -179,6 +167,117 @@ pub fn screen(
             place: screening.site.place,
         },
     }))
+}
+
+/// What every line of a roster shares.
+struct Setting {
+    sets: ModelSets,
+    scene: SiteScene,
+    axis: Axis,
+    members: Vec<physiology::Member>,
+}
+
+/// Site, axis and ensemble of a roster; none without shifts.
+fn setting(roster: &Roster, screening: &Screening) -> Option<Setting> {
+    let site = &screening.site;
+    let sets = ModelSets {
+        light: LightScenes::at_site(&screening.sets.light, &site.light),
+        ..screening.sets.clone()
+    };
+    let scene = SiteScene {
+        place: site.place,
+        sky: site.sky,
+        stress: site.stress,
+        habits: HabitFile::embedded().habits(),
+    };
+    let sampling = Sampling {
+        members: screening.members,
+        seed: screening.seed,
+        commute_min: site.commute_min.unwrap_or(scene.habits.commute_h * 60.0),
+        morning_daylight: site.morning_daylight,
+        habit: None,
+    };
+    Some(Setting {
+        axis: Axis::of(roster, &scene)?,
+        members: physiology::members(&sets.ensemble, sampling),
+        scene,
+        sets,
+    })
+}
+
+/// A cortisol sample to be placed in the biological time of a worker.
+#[derive(Debug, Clone, PartialEq)]
+pub struct SampleQuestion {
+    /// Worker as the roster names it.
+    pub worker: String,
+    /// Local date and time of the workplace.
+    pub at: chrono::NaiveDateTime,
+    /// What was sampled.
+    pub specimen: Specimen,
+    /// `CBTmin` and sleep, where they are known from outside.
+    pub stated: Option<Stated>,
+    /// Are the next comparable times asked for?
+    pub next: bool,
+}
+
+/// A span of local time.
+pub type LocalSpan = (
+    chrono::DateTime<chrono_tz::Tz>,
+    chrono::DateTime<chrono_tz::Tz>,
+);
+
+/// Why a sample is not placed.
+#[derive(Debug, Clone, PartialEq, Eq, thiserror::Error)]
+#[non_exhaustive]
+pub enum SampleRefusal {
+    /// The roster has no such worker.
+    #[error("the roster has no worker {0:?}")]
+    UnknownWorker(String),
+    /// The roster has no shifts.
+    #[error("the roster has no shifts")]
+    Empty,
+    /// The roster does not tell enough.
+    #[error(transparent)]
+    NotPlaced(#[from] NotPlaced),
+}
+
+/// Places a cortisol sample in the biological time of a worker on a roster.
+///
+/// # Errors
+///
+/// [`SampleRefusal`] with the reason.
+pub fn sample(
+    roster: &Roster,
+    screening: &Screening,
+    question: &SampleQuestion,
+) -> Result<(Placed, Option<Vec<LocalSpan>>), SampleRefusal> {
+    let Setting {
+        sets,
+        scene,
+        axis,
+        members,
+    } = &setting(roster, screening).ok_or(SampleRefusal::Empty)?;
+    let worker = roster
+        .worker_named(&question.worker)
+        .ok_or_else(|| SampleRefusal::UnknownWorker(question.worker.clone()))?;
+    let timeline = timeline::timeline(roster, worker, axis, scene);
+    let frame = biological_time::Frame {
+        timeline: &timeline,
+        members,
+        sets,
+        bands: &SampleBandSet::embedded(),
+    };
+    let at = axis.minute(timeline::civil::instant_of(axis.zone, question.at));
+    let placed = match question.stated {
+        Some(stated) => biological_time::place_stated(frame, at, question.specimen, stated),
+        None => biological_time::place(frame, at, question.specimen)?,
+    };
+    if !question.next {
+        return Ok((placed, None));
+    }
+    let spans = biological_time::comparable_spans(frame, at)?;
+    let local = |(from, to): (units::Minute, units::Minute)| (axis.local(from), axis.local(to));
+    Ok((placed, Some(spans.into_iter().map(local).collect())))
 }
 
 /// The same lines lived on the other pacemakers asked for.

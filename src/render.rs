@@ -10,6 +10,7 @@ pub mod json;
 #[cfg(feature = "parquet")]
 pub mod parquet;
 pub mod rhythm;
+pub mod sample;
 pub mod svg;
 pub mod terminal;
 pub mod validation;

@@ -90,6 +90,12 @@ impl Roster {
         (0..self.workers.len()).map(|index| WorkerId(u32::try_from(index).unwrap_or(u32::MAX)))
     }
 
+    /// The worker of a name.
+    pub fn worker_named(&self, name: &str) -> Option<WorkerId> {
+        self.worker_ids()
+            .find(|worker| self.workers[worker.index()].name == name)
+    }
+
     /// Counted duties of one worker, gaps of at most `join_gap_min` joined.
     pub fn counted_duties(&self, worker: WorkerId, join_gap_min: i64) -> Vec<DutyBlock> {
         duty::joined(self.shifts_of(worker), join_gap_min)

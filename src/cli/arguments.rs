@@ -10,6 +10,11 @@ const EXAMPLE: &str = "Example, on the demo roster:
 
 Exit codes: 0 done; 1 findings at or above --fail-on; 2 wrong usage; 3 input errors; 4 the computer refused.";
 
+const SAMPLE_EXAMPLE: &str = "Example, a morning value of a nurse of the demo ward:
+  acroshift sample rosters/tern-quay-ward.csv --audience clinician --worker N03 --at 2026-03-27T09:00 --matrix serum --value 310 --unit nmol/L
+
+Exit codes: 0 done; 2 wrong usage or the wrong audience; 3 input errors, or the roster does not tell enough.";
+
 const RHYTHM_EXAMPLE: &str = "Example, the saliva of three invented workers:
   acroshift rhythm rosters/tern-quay-saliva.csv --periods 24,12 --log
 
@@ -36,6 +41,9 @@ pub(crate) enum Command {
     /// Screen rosters: which recovery windows are compressed, and why.
     #[command(after_help = EXAMPLE)]
     Screen(ScreenOptions),
+    /// Place a cortisol sample in the biological time of a worker: band, timing, next comparable times.
+    #[command(after_help = SAMPLE_EXAMPLE)]
+    Sample(SampleOptions),
     /// Fit the rhythm of measured cortisol: cosinor, saliva measures, population.
     #[command(after_help = RHYTHM_EXAMPLE)]
     Rhythm(RhythmOptions),
@@ -53,6 +61,79 @@ pub(crate) struct ExplainOptions {
     /// A code as the program prints it: T21, compressed-rest, uk-daily-rest, uk-wtr.
     #[arg(value_name = "CODE")]
     pub(crate) code: String,
+}
+
+/// Options of `sample`.
+#[derive(Debug, Args)]
+pub(crate) struct SampleOptions {
+    /// Rosters: long tables as .csv or .xlsx; - reads standard input.
+    #[arg(required = true, value_name = "ROSTER")]
+    pub(crate) rosters: Vec<PathBuf>,
+
+    /// Worker, as the roster names it.
+    #[arg(long, value_name = "NAME")]
+    pub(crate) worker: String,
+
+    /// Local date and time of the sample: 2026-03-27T09:00.
+    #[arg(long, value_name = "TIME")]
+    pub(crate) at: String,
+
+    /// What is sampled.
+    #[arg(long, value_enum)]
+    pub(crate) matrix: MatrixName,
+
+    /// A measured value.
+    #[arg(long, requires = "unit")]
+    pub(crate) value: Option<f64>,
+
+    /// Its unit: nmol/L, ug/dL or ng/mL.
+    #[arg(long)]
+    pub(crate) unit: Option<String>,
+
+    /// CBTmin known from outside, clock time; DLMO + 7 h. Needs --sleep.
+    #[arg(long, value_name = "HH:MM", requires = "sleep")]
+    pub(crate) cbtmin: Option<String>,
+
+    /// Habitual sleep beside it: 08:00-16:00.
+    #[arg(long, value_name = "HH:MM-HH:MM", requires = "cbtmin")]
+    pub(crate) sleep: Option<String>,
+
+    /// List the next times at which a sample would be comparable with a day worker's.
+    #[arg(long)]
+    pub(crate) next_window: bool,
+
+    /// IANA time zone of the workplace, where the roster names none.
+    #[arg(long, value_name = "IANA")]
+    pub(crate) zone: Option<String>,
+
+    /// Site file.
+    #[arg(long, value_name = "SITE.toml")]
+    pub(crate) site: Option<PathBuf>,
+
+    /// Simulated people; rounded up to a multiple of 8.
+    #[arg(long, value_name = "N", default_value_t = 64, value_parser = clap::value_parser!(u16).range(1..=4096))]
+    pub(crate) members: u16,
+
+    /// Seed of the simulated people.
+    #[arg(long, value_name = "N", default_value_t = 1)]
+    pub(crate) seed: u64,
+
+    /// For whom; a sample is for the clinician only.
+    #[arg(long, value_enum, default_value_t = AudienceName::Planner)]
+    pub(crate) audience: AudienceName,
+
+    /// What is printed on standard output.
+    #[arg(long, value_enum, default_value_t = Format::Text)]
+    pub(crate) format: Format,
+}
+
+/// What is sampled.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, ValueEnum)]
+pub(crate) enum MatrixName {
+    /// Total cortisol.
+    Serum,
+    /// Free cortisol.
+    Saliva,
 }
 
 /// Options of `rhythm`.
@@ -262,7 +343,7 @@ impl PacemakerOption {
 pub(crate) enum Format {
     /// A summary in words.
     Text,
-    /// The whole result, schema acroshift.screen/1.
+    /// The whole result as JSON, with its schema named.
     Json,
 }
 

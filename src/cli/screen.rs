@@ -1,40 +1,38 @@
 //! `acroshift screen`: files to a report.
 
 use super::arguments::{AudienceName, Format, Level, ScreenOptions};
-use super::{Ending, Stop, output, parameters};
+use super::{Ending, Stop, files, output, parameters};
 use acroshift::assessment::{Attention, Pack, pack};
-use acroshift::diagnostic::{Code, Diagnostic, has_errors};
+use acroshift::diagnostic::has_errors;
 use acroshift::intake::site::Site;
-use acroshift::intake::{self, Input, Intake, Reading, site, zone_name};
+use acroshift::intake::{Intake, Reading, zone_name};
 use acroshift::render::{json, terminal};
 use acroshift::report::{Audience, ScreenReport, diagnostics};
-use acroshift::source::Origin;
 use acroshift::{Screening, screen};
 use anyhow::Context;
 use sha2::{Digest, Sha256};
 use std::collections::BTreeSet;
 use std::fmt::Write as _;
-use std::io::{Read, Write};
-use std::path::Path;
+use std::io::Write;
 
 /// Runs the command.
 pub(super) fn run(options: &ScreenOptions) -> Result<Ending, Stop> {
     use_threads(options)?;
-    let site = read_site(options)?;
+    let site = files::site(options.site.as_deref())?;
     let packs = packs(options, &site)?;
     check_derogations(&site, &packs)?;
     let reading = reading(options, &site)?;
     if let Some(folder) = &options.out {
         output::check_folder(folder, options.force, audience(options))?;
     }
-    let files = read_files(options);
+    let files = files::read(&options.rosters);
     // Files that could not be read have no place among the inputs, here as in the intake.
     let hashes: Vec<(String, String)> = files
         .iter()
         .filter(|file| file.refused.is_none())
         .map(|file| (file.name.clone(), sha256(&file.bytes)))
         .collect();
-    let read = read_rosters(&files, &reading);
+    let read = files::rosters(&files, &reading);
     let rows = diagnostics::rows(&read.diagnostics);
     let unusable = has_errors(&read.diagnostics) && !options.allow_partial;
     // Notes are told in the report; on the terminal only what asks for a decision.
@@ -130,15 +128,6 @@ fn use_threads(options: &ScreenOptions) -> Result<(), Stop> {
     Ok(())
 }
 
-fn read_site(options: &ScreenOptions) -> Result<Site, Stop> {
-    let Some(path) = &options.site else {
-        return Ok(Site::default());
-    };
-    let text = std::fs::read_to_string(path)
-        .map_err(|error| Stop::usage(format!("{}: {error}", path.display())))?;
-    site::read(&text).map_err(|error| Stop::usage(format!("{}: {error}", path.display())))
-}
-
 fn packs(options: &ScreenOptions, site: &Site) -> Result<Vec<Pack>, Stop> {
     let names: Vec<String> = match (options.rules.is_empty(), site.rules.is_empty()) {
         (false, _) => options.rules.clone(),
@@ -189,72 +178,6 @@ fn reading(options: &ScreenOptions, site: &Site) -> Result<Reading, Stop> {
         first_date: options.from,
         last_date: options.to,
     })
-}
-
-/// A file, or why it could not be read.
-struct File {
-    name: String,
-    bytes: Vec<u8>,
-    refused: Option<String>,
-}
-
-fn read_files(options: &ScreenOptions) -> Vec<File> {
-    options.rosters.iter().map(|path| read_file(path)).collect()
-}
-
-fn read_file(path: &Path) -> File {
-    if path.as_os_str() == "-" {
-        let mut bytes = Vec::new();
-        let refused = std::io::stdin().read_to_end(&mut bytes).err();
-        return File {
-            name: "standard input".to_owned(),
-            bytes,
-            refused: refused.map(|error| error.to_string()),
-        };
-    }
-    let name = path.file_name().map_or_else(
-        || path.display().to_string(),
-        |name| name.to_string_lossy().into_owned(),
-    );
-    let (bytes, refused) = if path.is_dir() {
-        (
-            Vec::new(),
-            Some("is a folder; name the roster files in it".to_owned()),
-        )
-    } else {
-        match std::fs::read(path) {
-            Ok(bytes) => (bytes, None),
-            Err(error) => (Vec::new(), Some(error.to_string())),
-        }
-    };
-    File {
-        name,
-        bytes,
-        refused,
-    }
-}
-
-fn read_rosters(files: &[File], reading: &Reading) -> Intake {
-    let inputs: Vec<Input<'_>> = files
-        .iter()
-        .filter(|file| file.refused.is_none())
-        .map(|file| Input {
-            name: &file.name,
-            bytes: &file.bytes,
-        })
-        .collect();
-    let mut read = intake::read(&inputs, reading);
-    for file in files {
-        if let Some(reason) = &file.refused {
-            let origin = Origin::File {
-                file: file.name.clone(),
-            };
-            let message = format!("cannot be read: {reason}");
-            read.diagnostics
-                .insert(0, Diagnostic::new(Code::Unreadable, origin, message));
-        }
-    }
-    read
 }
 
 fn sha256(bytes: &[u8]) -> String {

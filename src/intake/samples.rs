@@ -370,8 +370,8 @@ impl<'a> Reader<'a> {
     }
 }
 
-/// nmol/L in one of a unit.
-fn factor_of(unit: &str) -> Option<f64> {
+/// nmol/L in one of a unit: nmol/L, ug/dL, ng/mL; none for another.
+pub fn factor_of(unit: &str) -> Option<f64> {
     match unit
         .to_lowercase()
         .replace(['\u{b5}', '\u{3bc}'], "u")

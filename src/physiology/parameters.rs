@@ -323,6 +323,33 @@ impl BindingSet {
 }
 
 parameter_set! {
+    /// `sample-band`: from the modelled group mean to one measured value of one person.
+    SampleBandSet {
+        /// Serum.
+        serum: Variation { between, within }
+        /// Saliva.
+        saliva: SalivaVariation { between, within }
+        /// Close to waking.
+        waking: NearWaking { further, lasts }
+        /// Where a day worker's morning sample stands.
+        timing: SampleTiming { from, to, inside, outside }
+        /// When a sample is comparable with a day worker's.
+        comparable: Comparable { awake_from, awake_to, main_sleep, no_night, history_from, history_to }
+    }
+}
+
+impl SampleBandSet {
+    /// The set embedded in the program.
+    ///
+    /// # Panics
+    ///
+    /// Never in a built program: a test reads every file.
+    pub fn embedded() -> Self {
+        toml::from_str(include_str!("parameters/sample-band.toml")).expect(READ_BY_A_TEST)
+    }
+}
+
+parameter_set! {
     /// `ensemble`: spread of the simulated people.
     EnsembleSet {
         /// Intrinsic period.
@@ -614,6 +641,7 @@ mod tests {
             let list = sets.listed();
             assert!(list.len() > 60, "only {} numbers are listed", list.len());
             assert_eq!(BindingSet::embedded().listed().len(), 5);
+            assert_eq!(SampleBandSet::embedded().listed().len(), 16);
             for (set, key, number) in list {
                 assert!(!number.unit.is_empty(), "{set} {key} has no unit");
                 assert!(!number.source.is_empty(), "{set} {key} has no source");

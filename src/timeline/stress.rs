@@ -47,12 +47,7 @@ impl Stress {
     /// ```
     pub fn on(&self, start: ClockHour, hours: f64) -> f64 {
         let (from, to) = (start.get(), start.get() + hours);
-        let inside =
-            |night_from: f64, night_to: f64| (to.min(night_to) - from.max(night_from)).max(0.0);
-        let at_night: f64 = [-1.0, 23.0, 47.0]
-            .iter()
-            .map(|night| inside(*night, night + 7.0))
-            .sum();
+        let at_night = hours_at_night(start, hours);
         if at_night >= 3.0 {
             self.night
         } else if from < 6.0 {
@@ -63,4 +58,22 @@ impl Stress {
             self.day
         }
     }
+}
+
+/// Hours of a duty between 23:00 and 06:00, by the clock hour of its start and its length of at most two days.
+///
+/// # Example
+///
+/// ```
+/// use acroshift::timeline::stress::hours_at_night;
+/// use acroshift::units::ClockHour;
+/// assert_eq!(hours_at_night(ClockHour::wrapping(19.0), 12.0), 7.0);
+/// assert_eq!(hours_at_night(ClockHour::wrapping(5.0), 8.0), 1.0);
+/// ```
+pub fn hours_at_night(start: ClockHour, hours: f64) -> f64 {
+    let (from, to) = (start.get(), start.get() + hours);
+    [-1.0, 23.0, 47.0]
+        .iter()
+        .map(|night| (to.min(night + 7.0) - from.max(*night)).max(0.0))
+        .sum()
 }

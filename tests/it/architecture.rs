@@ -57,7 +57,14 @@ fn allowed() -> BTreeMap<&'static str, &'static [&'static str]> {
         ),
         (
             "render",
-            &["report", "validation", "rhythm", "numeric", "units"][..],
+            &[
+                "report",
+                "validation",
+                "rhythm",
+                "biological_time",
+                "numeric",
+                "units",
+            ][..],
         ),
     ])
 }

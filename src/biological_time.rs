@@ -274,7 +274,7 @@ fn standing(frame: Frame<'_>, at: Minute, tracks: &[MemberTrack]) -> Standing {
             p95: f64::NAN,
         })
     };
-    let since_waking_h = of_members(|track, at| track.awake_h(at));
+    let since_waking_h = of_members(MemberTrack::awake_h);
     let main_sleep_h = of_members(|track, at| {
         track
             .main_sleep(at + -1440, at)

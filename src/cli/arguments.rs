@@ -90,7 +90,7 @@ pub(crate) struct SampleOptions {
     #[arg(long)]
     pub(crate) unit: Option<String>,
 
-    /// CBTmin known from outside, clock time; DLMO + 7 h. Needs --sleep.
+    /// Minimum of body temperature known from outside, clock time; melatonin onset + 7 h. Needs --sleep.
     #[arg(long, value_name = "HH:MM", requires = "sleep")]
     pub(crate) cbtmin: Option<String>,
 
@@ -139,7 +139,7 @@ pub(crate) enum MatrixName {
 /// Options of `rhythm`.
 #[derive(Debug, Args)]
 pub(crate) struct RhythmOptions {
-    /// Table of samples: subject, time, value, unit and, if known, matrix, assay, waking_time; - reads standard input.
+    /// Table of samples: subject, time, value, unit and, if known, matrix, assay and the time of waking; - reads standard input.
     #[arg(value_name = "SAMPLES")]
     pub(crate) samples: PathBuf,
 

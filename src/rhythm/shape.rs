@@ -45,30 +45,56 @@ impl Curve<'_> {
         rows
     }
 
+    /// Value, slope and bend at a time.
     fn at(&self, time_h: f64) -> [f64; 3] {
-        self.rows(time_h)
-            .map(|row| row.iter().zip(self.coefficients).map(|(a, b)| a * b).sum())
+        let [mut value, mut slope, mut bend] = [self.coefficients[0], 0.0, 0.0];
+        for (index, period) in self.periods_h.iter().enumerate() {
+            let speed = 2.0 * std::f64::consts::PI / period;
+            let (sine, cosine) = (libm::sin(speed * time_h), libm::cos(speed * time_h));
+            let (beta, gamma) = (
+                self.coefficients[1 + 2 * index],
+                self.coefficients[2 + 2 * index],
+            );
+            value += beta * cosine + gamma * sine;
+            slope += speed * (gamma * cosine - beta * sine);
+            bend -= speed * speed * (beta * cosine + gamma * sine);
+        }
+        [value, slope, bend]
     }
 
-    /// Highest (`sign` 1) or lowest (-1) point over a period: a grid, then Newton's rule.
-    fn extreme(&self, longest_h: f64, sign: f64) -> f64 {
-        const STEPS: u32 = 288;
-        let mut best = (f64::NEG_INFINITY, 0.0);
-        for step in 0..STEPS {
-            let time = longest_h * f64::from(step) / f64::from(STEPS);
-            let value = sign * self.at(time)[0];
-            if value > best.0 {
-                best = (value, time);
+    /// Times of the highest and the lowest point over a period: a grid, then Newton's rule.
+    fn extremes(&self, longest_h: f64) -> (f64, f64) {
+        /// Steps of the grid in the shortest period.
+        const STEPS: f64 = 48.0;
+        let shortest = self.periods_h.iter().copied().fold(longest_h, f64::min);
+        let step_h = shortest / STEPS;
+        let (mut high, mut low) = ((f64::MIN, 0.0), (f64::MAX, 0.0));
+        let mut time = 0.0;
+        while time < longest_h {
+            let value = self.at(time)[0];
+            if value > high.0 {
+                high = (value, time);
             }
+            if value < low.0 {
+                low = (value, time);
+            }
+            time += step_h;
         }
-        let mut time = best.1;
+        (
+            self.polished(high.1, step_h, longest_h),
+            self.polished(low.1, step_h, longest_h),
+        )
+    }
+
+    fn polished(&self, from_h: f64, reach_h: f64, longest_h: f64) -> f64 {
+        let mut time = from_h;
         for _ in 0..50 {
             let [_, slope, bend] = self.at(time);
             let step = slope / bend;
             if !step.is_finite() || step.abs() < 1e-14 {
                 break;
             }
-            time -= step.clamp(-0.5, 0.5);
+            time -= step.clamp(-reach_h, reach_h);
         }
         crate::numeric::circular::wrap(time, longest_h)
     }
@@ -89,8 +115,7 @@ impl Shape {
             coefficients,
             periods_h,
         };
-        let peak_h = curve.extreme(longest, 1.0);
-        let trough_h = curve.extreme(longest, -1.0);
+        let (peak_h, trough_h) = curve.extremes(longest);
         let (peak, trough) = (curve.at(peak_h), curve.at(trough_h)[0]);
         let row = |time: f64, order: usize| DVector::from_vec(curve.rows(time)[order].clone());
         let slope = row(peak_h, 1);

@@ -26,6 +26,11 @@ fn allowed() -> BTreeMap<&'static str, &'static [&'static str]> {
         ),
         ("timeline", &["roster", "numeric", "units"][..]),
         ("physiology", &["timeline", "numeric", "units"][..]),
+        ("rhythm", &["numeric", "units"][..]),
+        (
+            "biological_time",
+            &["timeline", "physiology", "numeric", "units"][..],
+        ),
         (
             "validation",
             &["timeline", "physiology", "numeric", "units"][..],

@@ -19,6 +19,7 @@ mod properties;
 mod reference;
 mod rosters;
 mod rules;
+mod samples;
 mod scratch;
 mod validation;
 #[cfg(feature = "xlsx")]

@@ -54,7 +54,7 @@ fn check_fit(name: &str, found: &Cosinor, expected: &Value) {
             found,
             &expected[key],
             LEAST_SQUARES,
-        )
+        );
     };
     for (index, coefficient) in found.coefficients.iter().enumerate() {
         check(name, *coefficient, &expected["coef"][index], LEAST_SQUARES);
@@ -88,7 +88,7 @@ fn check_fit(name: &str, found: &Cosinor, expected: &Value) {
                 found,
                 &expected[key],
                 LEAST_SQUARES,
-            )
+            );
         };
         number("amplitude", component.amplitude);
         number("acrophase_deg", component.acrophase_deg());

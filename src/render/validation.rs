@@ -22,7 +22,7 @@ fn number(number: Option<f64>) -> String {
 
 fn observed(row: &Row) -> String {
     match (row.observed, row.error) {
-        (Some(_), Some(error)) => format!("{} +- {error:.2}", number(row.observed)),
+        (Some(_), Some(error)) => format!("{} \u{b1} {error:.2}", number(row.observed)),
         _ => number(row.observed),
     }
 }
@@ -267,10 +267,10 @@ pub fn csv(report: &ValidationReport, out: &mut impl Write) -> io::Result<()> {
     writer.flush()
 }
 
-const STYLE: &str = "body{font-family:sans-serif;max-width:75rem;margin:1rem auto;padding:0 1rem;color-scheme:light dark}\
+const STYLE: &str = "body{font-family:sans-serif;max-width:100rem;margin:1rem auto;padding:0 1rem;color-scheme:light dark}\
 table{border-collapse:collapse;width:100%}th,td{border-bottom:1px solid #8888;padding:.25rem .5rem;text-align:left;vertical-align:top}\
-td.number{white-space:nowrap;font-variant-numeric:tabular-nums}.scroll{overflow-x:auto}thead{display:table-header-group}tr{break-inside:avoid}\
-@media print{@page{size:A4 landscape;margin:12mm}body{font-size:8pt;margin:0;padding:0}.scroll{overflow:visible}td.number{white-space:normal}}";
+td.number{font-variant-numeric:tabular-nums;min-width:4.5rem}td:nth-child(2){min-width:9rem}td:last-child{min-width:14rem}.scroll{overflow-x:auto}thead{display:table-header-group}tr{break-inside:avoid}\
+@media print{@page{size:A4 landscape;margin:12mm}body{font-size:8pt;margin:0;padding:0}.scroll{overflow:visible}td.number,td:nth-child(2),td:last-child{min-width:0}}";
 
 /// A page of its own, without external references.
 ///

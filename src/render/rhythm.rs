@@ -43,6 +43,13 @@ pub fn text(table: &RhythmTable, out: &mut impl Write) -> io::Result<()> {
             text_of_saliva(day, out)?;
         }
     }
+    if table
+        .subjects
+        .iter()
+        .any(|subject| !subject.saliva.is_empty())
+    {
+        writeln!(out, "\n{}", day_counts())?;
+    }
     match &table.population {
         Some(population) => text_of_population(table, population, out),
         None => writeln!(
@@ -174,6 +181,18 @@ fn probability(p: f64) -> String {
     }
 }
 
+/// How many days a reliable measure takes.
+fn day_counts() -> String {
+    let counts: Vec<String> = crate::rhythm::saliva::DAY_COUNTS
+        .iter()
+        .map(|count| format!("{} {}", count.measure, count.between))
+        .collect();
+    format!(
+        "Days of sampling that tell persons apart (Segerstrom 2014, upper figures): {}. The waking response repeats poorly from day to day.",
+        counts.join(", ")
+    )
+}
+
 fn text_of_saliva(day: &SalivaDay, out: &mut impl Write) -> io::Result<()> {
     write!(
         out,
@@ -197,10 +216,16 @@ fn text_of_saliva(day: &SalivaDay, out: &mut impl Write) -> io::Result<()> {
             response.mean_increase, response.increase, response.ground
         )?;
     }
-    for (kind, slope) in &day.slopes {
-        write!(out, "; slope {} {slope:.3}/h", kind.word())?;
+    writeln!(out)?;
+    if !day.slopes.is_empty() {
+        let slopes: Vec<String> = day
+            .slopes
+            .iter()
+            .map(|(kind, slope)| format!("{} {slope:.3}", kind.word()))
+            .collect();
+        writeln!(out, "    slopes, nmol/L per h: {}", slopes.join(", "))?;
     }
-    writeln!(out)
+    Ok(())
 }
 
 fn text_of_population(
@@ -212,21 +237,27 @@ fn text_of_population(
         let turns = -radians / (2.0 * std::f64::consts::PI);
         hours(turns * table.plan.design.periods_h[0] + table.plan.reference_h)
     };
+    // On the log scale the MESOR is geometric and the amplitude a ratio.
+    let log = table.plan.log;
+    let level = |value: f64| if log { libm::exp(value) } else { value };
+    let height = |value: f64| if log { libm::exp(2.0 * value) } else { value };
     let limits = population.acrophase_limits.map_or_else(
         || "limits not told".to_owned(),
         |(low, high)| format!("{} to {}", at(high), at(low)),
     );
     writeln!(
         out,
-        "\nPopulation of {}: MESOR {:.2} ({:.2} to {:.2}), amplitude {:.2} ({:.2} to {:.2}; mean of the subjects' own {:.2}), acrophase {} ({limits}), F(2, {:.0}) {:.2}, p {}{}",
+        "\nPopulation of {}: {} {:.2} nmol/L ({:.2} to {:.2}), {} {:.2} ({:.2} to {:.2}; mean of the subjects' own {:.2}), acrophase {} ({limits}), F(2, {:.0}) {:.2}, p {}{}",
         population.k,
-        population.mesor,
-        population.mesor_limits.0,
-        population.mesor_limits.1,
-        population.amplitude,
-        population.amplitude_limits.0,
-        population.amplitude_limits.1,
-        population.mean_amplitude,
+        if log { "geometric MESOR" } else { "MESOR" },
+        level(population.mesor),
+        level(population.mesor_limits.0),
+        level(population.mesor_limits.1),
+        if log { "peak over trough" } else { "amplitude" },
+        height(population.amplitude),
+        height(population.amplitude_limits.0),
+        height(population.amplitude_limits.1),
+        height(population.mean_amplitude),
         at(population.acrophase_rad),
         population.df,
         population.f,

@@ -94,7 +94,7 @@ impl SlopeKind {
     pub fn word(self) -> &'static str {
         match self {
             Self::Fitted => "fitted without the waking response",
-            Self::FittedLog => "fitted to the logarithm",
+            Self::FittedLog => "fitted to the natural logarithm (per h)",
             Self::WakeToBed => "waking to bed",
             Self::PeakToBed => "peak to bed",
         }

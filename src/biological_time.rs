@@ -3,12 +3,12 @@
 //! The *sample band* is the range for one measured value of one person: the spread of the modelled members, widened by the variation
 //! between and within persons. It is never the band of the modelled group mean.
 
-use crate::numeric::quantile::{Quantiles, quantiles};
-use crate::physiology::cascade::{Cascade, Load};
+use crate::numeric::quantile::{Quantiles, circular_quantiles, quantiles};
+use crate::physiology::cascade::{Cascade, Load, SleepDebt, StressSpan};
 use crate::physiology::free_cortisol::Binding;
 use crate::physiology::pacemaker::LANES;
 use crate::physiology::parameters::{BindingSet, SampleBandSet};
-use crate::physiology::{CORTISOL_STEP_MIN, Engine, Member, MemberTrack, ModelSets};
+use crate::physiology::{CORTISOL_STEP_MIN, Engine, Member, MemberTrack, ModelSets, SleepEpisode};
 use crate::timeline::stress::hours_at_night;
 use crate::timeline::{DutySpan, Timeline};
 use crate::units::{Minute, minutes_to_hours};
@@ -134,6 +134,8 @@ pub enum NotPlaced {
 pub struct Frame<'a> {
     /// The person's duties.
     pub timeline: &'a Timeline,
+    /// End of the date on which the last shift of the roster ends.
+    pub last: Minute,
     /// Members of the ensemble.
     pub members: &'a [Member],
     /// Parameter sets.
@@ -146,58 +148,120 @@ pub struct Frame<'a> {
 ///
 /// # Errors
 ///
-/// [`NotPlaced`] where the roster does not tell enough of the days before.
-pub fn place(frame: Frame<'_>, at: Minute, specimen: Specimen) -> Result<Placed, NotPlaced> {
-    let timeline = frame.timeline;
-    if at < Minute(0) || at >= timeline.end {
-        return Err(NotPlaced::OutsideRoster);
-    }
-    check_history(frame, at)?;
-    let engine = Engine::new(frame.sets);
-    let warm = engine.warm_up(frame.members, &timeline.habits);
-    let tracks = engine.tracks(&warm, timeline);
-    let free = Timeline {
-        duties: Vec::new(),
-        ..timeline.clone()
-    };
-    let day_worker = engine.tracks(&warm, &free);
-    Ok(placed(frame, at, specimen, &tracks, &day_worker))
+/// [`NotPlaced`] where the roster does not hold the sample, or does not tell enough of the days before and nothing is stated.
+pub fn place(
+    frame: Frame<'_>,
+    at: Minute,
+    specimen: Specimen,
+    stated: Option<Stated>,
+) -> Result<Placed, NotPlaced> {
+    let lived = Lived::of(frame, at, stated)?;
+    let standing = standing(frame, at, &lived.tracks);
+    let near_waking = standing.since_waking_h.p05 * 60.0 < frame.bands.waking.lasts.value
+        && lived.tracks.iter().any(|track| track.awake_h(at) > 0.0);
+    let stress = crate::physiology::stress_spans(frame.timeline);
+    Ok(Placed {
+        specimen,
+        standing,
+        band: sample_band(frame, at, specimen, &lived.tracks, &stress, near_waking),
+        day_worker: sample_band(frame, at, specimen, &lived.day_worker, &[], false),
+        near_waking,
+    })
 }
 
-/// Places a sample by a stated `CBTmin` and sleep; the day worker is the mean member on free days.
-pub fn place_stated(frame: Frame<'_>, at: Minute, specimen: Specimen, stated: Stated) -> Placed {
-    let member = frame.members[0];
+/// The next spans, from `from` to the end of the roster, in which a sample would be comparable with a day worker's.
+///
+/// # Errors
+///
+/// As [`place`].
+pub fn comparable_spans(
+    frame: Frame<'_>,
+    from: Minute,
+    stated: Option<Stated>,
+) -> Result<Vec<(Minute, Minute)>, NotPlaced> {
+    /// Instants are looked at this far apart, minutes.
+    const STEP_MIN: i64 = 15;
+    let lived = Lived::of(frame, from, stated)?;
+    let mut spans: Vec<(Minute, Minute)> = Vec::new();
+    let mut at = from;
+    while at < frame.last {
+        if standing(frame, at, &lived.tracks).comparable {
+            match spans.last_mut() {
+                Some(last) if last.1 == at => last.1 = at + STEP_MIN,
+                _ => spans.push((at, at + STEP_MIN)),
+            }
+        }
+        at = at + STEP_MIN;
+    }
+    Ok(spans)
+}
+
+/// The person as modelled or stated, and day workers on the same dates.
+struct Lived {
+    tracks: Vec<MemberTrack>,
+    day_worker: Vec<MemberTrack>,
+}
+
+impl Lived {
+    fn of(frame: Frame<'_>, at: Minute, stated: Option<Stated>) -> Result<Self, NotPlaced> {
+        let timeline = frame.timeline;
+        if at < Minute(0) || at >= frame.last {
+            return Err(NotPlaced::OutsideRoster);
+        }
+        if stated.is_none() {
+            check_history(frame, at)?;
+        }
+        let engine = Engine::new(frame.sets);
+        let warm = engine.warm_up(frame.members, &timeline.habits);
+        let free = Timeline {
+            duties: Vec::new(),
+            ..timeline.clone()
+        };
+        Ok(Self {
+            tracks: match stated {
+                Some(stated) => vec![stated_track(frame, stated)],
+                None => engine.tracks(&warm, timeline),
+            },
+            day_worker: engine.tracks(&warm, &free),
+        })
+    }
+}
+
+/// The same sleep and `CBTmin` by the local clock every day, from a week before the roster to its end.
+fn stated_track(frame: Frame<'_>, stated: Stated) -> MemberTrack {
+    const DAYS_BEFORE: i64 = 8;
     let need_h = crate::numeric::circular::wrap(stated.sleep_h.1 - stated.sleep_h.0, 24.0);
-    // A week of the stated days up to the sample.
-    let day = at.0.div_euclid(1440);
-    let first = day - 8;
-    let midnight = |d: i64| Minute(d * 1440).as_f64();
-    let own = MemberTrack {
-        member: Member { need_h, ..member },
-        sleeps: (first..=day + 1)
-            .map(|d| {
-                let from = Minute::nearest(midnight(d) + stated.sleep_h.0 * 60.0);
-                crate::physiology::SleepEpisode {
+    let last = frame.timeline.end.0.div_euclid(1440) + 2;
+    let at_clock =
+        |day: i64, hour: f64| elapsed(frame.timeline, day * 1440 + Minute::nearest(hour * 60.0).0);
+    let cbtmin_min: Vec<f64> = (-DAYS_BEFORE..=last)
+        .map(|day| at_clock(day, stated.cbtmin_h).as_f64())
+        .collect();
+    MemberTrack {
+        member: Member {
+            need_h,
+            ..frame.members[0]
+        },
+        sleeps: (-DAYS_BEFORE..=last)
+            .map(|day| {
+                let from = at_clock(day, stated.sleep_h.0);
+                SleepEpisode {
                     from,
                     to: from + Minute::nearest(need_h * 60.0).0,
                     cut: false,
                 }
             })
             .collect(),
-        cbtmin_min: (first..=day + 2)
-            .map(|d| midnight(d) + stated.cbtmin_h * 60.0)
-            .collect(),
-        amplitude_ratio: vec![1.0; usize::try_from(day + 3 - first).unwrap_or(0)],
-        habitual_cbtmin_min: midnight(first) + stated.cbtmin_h * 60.0,
-    };
-    let engine = Engine::new(frame.sets);
-    let warm = engine.warm_up(frame.members, &frame.timeline.habits);
-    let free = Timeline {
-        duties: Vec::new(),
-        ..frame.timeline.clone()
-    };
-    let day_worker = engine.tracks(&warm, &free);
-    placed(frame, at, specimen, &[own], &day_worker)
+        amplitude_ratio: vec![1.0; cbtmin_min.len()],
+        habitual_cbtmin_min: cbtmin_min[0],
+        cbtmin_min,
+    }
+}
+
+/// The elapsed minute at which the local clock shows a minute.
+fn elapsed(timeline: &Timeline, shown: i64) -> Minute {
+    let beyond = |minute: i64| timeline.clock.at(Minute(minute)) - minute;
+    Minute(shown - beyond(shown - beyond(shown)))
 }
 
 /// Complete days back to the last three consecutive days without night duty.
@@ -246,24 +310,6 @@ fn is_night(duty: &DutySpan) -> bool {
     hours_at_night(duty.start_clock, duty.end.hours_since(duty.start)) >= 3.0
 }
 
-fn placed(
-    frame: Frame<'_>,
-    at: Minute,
-    specimen: Specimen,
-    tracks: &[MemberTrack],
-    day_worker: &[MemberTrack],
-) -> Placed {
-    let standing = standing(frame, at, tracks);
-    let near_waking = standing.since_waking_h.p05 * 60.0 < frame.bands.waking.lasts.value;
-    Placed {
-        specimen,
-        standing,
-        band: sample_band(frame, at, specimen, tracks, near_waking),
-        day_worker: sample_band(frame, at, specimen, day_worker, false),
-        near_waking,
-    }
-}
-
 fn standing(frame: Frame<'_>, at: Minute, tracks: &[MemberTrack]) -> Standing {
     let bands = frame.bands;
     let of_members = |value: fn(&MemberTrack, Minute) -> f64| {
@@ -280,10 +326,15 @@ fn standing(frame: Frame<'_>, at: Minute, tracks: &[MemberTrack]) -> Standing {
             .main_sleep(at + -1440, at)
             .map_or(0.0, |sleep| minutes_to_hours(sleep.inside(at + -1440, at)))
     });
-    let (from, to) = (bands.timing.from.value, bands.timing.to.value);
-    let hold = tracks
+    let phases: Vec<f64> = tracks
         .iter()
-        .filter(|track| (from..=to).contains(&(track.phase_min(at.as_f64()) / 60.0)))
+        .map(|track| track.phase_min(at.as_f64()) / 60.0)
+        .collect();
+    let since_cbtmin_h = circular_quantiles(&phases, 24.0, 0.0).unwrap_or(since_waking_h);
+    let (from, to) = (bands.timing.from.value, bands.timing.to.value);
+    let hold = phases
+        .iter()
+        .filter(|phase| (from..=to).contains(*phase))
         .count();
     let timing = timing(hold, tracks.len(), bands);
     let since = at + -Minute::nearest(bands.comparable.no_night.value * 60.0).0;
@@ -309,43 +360,10 @@ fn standing(frame: Frame<'_>, at: Minute, tracks: &[MemberTrack]) -> Standing {
             && nights_before == 0
             && !on_duty_at_night,
         since_waking_h,
-        since_cbtmin_h: of_members(|track, at| track.phase_min(at.as_f64()) / 60.0),
+        since_cbtmin_h,
         main_sleep_h,
         nights_before,
     }
-}
-
-/// The next spans, from `from` to the end of the roster, in which a sample would be comparable with a day worker's.
-///
-/// # Errors
-///
-/// As [`place`].
-pub fn comparable_spans(
-    frame: Frame<'_>,
-    from: Minute,
-) -> Result<Vec<(Minute, Minute)>, NotPlaced> {
-    /// Instants are looked at this far apart, minutes.
-    const STEP_MIN: i64 = 15;
-    let timeline = frame.timeline;
-    if from < Minute(0) || from >= timeline.end {
-        return Err(NotPlaced::OutsideRoster);
-    }
-    check_history(frame, from)?;
-    let engine = Engine::new(frame.sets);
-    let warm = engine.warm_up(frame.members, &timeline.habits);
-    let tracks = engine.tracks(&warm, timeline);
-    let mut spans: Vec<(Minute, Minute)> = Vec::new();
-    let mut at = from;
-    while at < timeline.end {
-        if standing(frame, at, &tracks).comparable {
-            match spans.last_mut() {
-                Some(last) if last.1 == at => last.1 = at + STEP_MIN,
-                _ => spans.push((at, at + STEP_MIN)),
-            }
-        }
-        at = at + STEP_MIN;
-    }
-    Ok(spans)
 }
 
 fn timing(hold: usize, of: usize, bands: &SampleBandSet) -> Timing {
@@ -365,10 +383,11 @@ fn sample_band(
     at: Minute,
     specimen: Specimen,
     tracks: &[MemberTrack],
+    stress: &[StressSpan],
     near_waking: bool,
 ) -> SampleBand {
     let binding = Binding::new(&BindingSet::embedded());
-    let logs: Vec<f64> = totals_at(frame.sets, tracks, at)
+    let logs: Vec<f64> = totals_at(frame.sets, tracks, stress, at)
         .into_iter()
         .map(|total| match specimen {
             Specimen::Serum => total,
@@ -395,8 +414,17 @@ fn sample_band(
 }
 
 /// Total serum cortisol of the tracks at a minute, nmol/L.
-fn totals_at(sets: &ModelSets, tracks: &[MemberTrack], at: Minute) -> Vec<f64> {
+fn totals_at(
+    sets: &ModelSets,
+    tracks: &[MemberTrack],
+    stress: &[StressSpan],
+    at: Minute,
+) -> Vec<f64> {
     let cascade = Cascade::new(&sets.cascade);
+    let load = Load {
+        debt: SleepDebt::On,
+        stress,
+    };
     let from = tracks
         .iter()
         .filter_map(|track| track.cbtmin_min.first())
@@ -407,7 +435,7 @@ fn totals_at(sets: &ModelSets, tracks: &[MemberTrack], at: Minute) -> Vec<f64> {
         .chunks(LANES)
         .flat_map(|unit| {
             let span = (from, at + CORTISOL_STEP_MIN);
-            let rows = cascade.rows(unit, Load::DEBT, span, CORTISOL_STEP_MIN);
+            let rows = cascade.rows(unit, load, span, CORTISOL_STEP_MIN);
             rows.at(at)
                 .map_or(Vec::new(), |row| row[..unit.len()].to_vec())
         })

@@ -263,19 +263,17 @@ pub fn sample(
     let timeline = timeline::timeline(roster, worker, axis, scene);
     let frame = biological_time::Frame {
         timeline: &timeline,
+        last: axis.last_end(),
         members,
         sets,
         bands: &SampleBandSet::embedded(),
     };
     let at = axis.minute(timeline::civil::instant_of(axis.zone, question.at));
-    let placed = match question.stated {
-        Some(stated) => biological_time::place_stated(frame, at, question.specimen, stated),
-        None => biological_time::place(frame, at, question.specimen)?,
-    };
+    let placed = biological_time::place(frame, at, question.specimen, question.stated)?;
     if !question.next {
         return Ok((placed, None));
     }
-    let spans = biological_time::comparable_spans(frame, at)?;
+    let spans = biological_time::comparable_spans(frame, at, question.stated)?;
     let local = |(from, to): (units::Minute, units::Minute)| (axis.local(from), axis.local(to));
     Ok((placed, Some(spans.into_iter().map(local).collect())))
 }

@@ -298,7 +298,7 @@ struct UnitPart {
 }
 
 /// Duties on which the site assumes another drive of the stress axis.
-fn stress_spans(timeline: &Timeline) -> Vec<StressSpan> {
+pub fn stress_spans(timeline: &Timeline) -> Vec<StressSpan> {
     timeline
         .duties
         .iter()

@@ -147,6 +147,12 @@ impl Axis {
         &dates[..dates.partition_point(|day| day.start <= last)]
     }
 
+    /// End of the date on which the last shift ends: later the roster tells nothing.
+    pub fn last_end(&self) -> Minute {
+        let before_last = self.days.len().checked_sub(2);
+        before_last.map_or(Minute(0), |place| self.days[place].end)
+    }
+
     /// Elapsed minute of an instant, cut to whole minutes.
     pub fn minute(&self, instant: DateTime<Utc>) -> Minute {
         Minute((instant - self.epoch).num_minutes())

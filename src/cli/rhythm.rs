@@ -3,12 +3,12 @@
 use super::arguments::{RhythmFormat, RhythmOptions};
 use super::{Ending, Stop, output};
 use acroshift::diagnostic::has_errors;
+use acroshift::intake::Input;
 use acroshift::intake::samples::{self, Samples};
-use acroshift::intake::{Input, samples::Subject};
 use acroshift::render::{rhythm as render, terminal};
 use acroshift::report::diagnostics;
 use acroshift::rhythm::Design;
-use acroshift::rhythm::subjects::{Plan, SubjectSample, analyse};
+use acroshift::rhythm::subjects::{Plan, Series, SubjectSample, analyse};
 use anyhow::Context;
 use std::io::{Read, Write};
 
@@ -30,7 +30,7 @@ pub(super) fn run(options: &RhythmOptions) -> Result<Ending, Stop> {
         .context("writing messages")?;
     output::tell(&messages);
     let unusable = has_errors(&told) && !options.allow_partial;
-    if unusable || samples.subjects.is_empty() {
+    if unusable || samples.series.is_empty() {
         return Ok(Ending::Input);
     }
     let table = analyse(&series(&samples), plan);
@@ -72,9 +72,9 @@ fn read(options: &RhythmOptions) -> Result<Vec<u8>, Stop> {
     std::fs::read(&options.samples).map_err(told)
 }
 
-fn series(samples: &Samples) -> Vec<(String, Vec<SubjectSample>)> {
-    let of = |subject: &Subject| {
-        subject
+fn series(samples: &Samples) -> Vec<Series> {
+    let of = |series: &samples::Series| {
+        series
             .samples
             .iter()
             .map(|sample| SubjectSample {
@@ -86,8 +86,12 @@ fn series(samples: &Samples) -> Vec<(String, Vec<SubjectSample>)> {
             .collect()
     };
     samples
-        .subjects
+        .series
         .iter()
-        .map(|subject| (subject.name.clone(), of(subject)))
+        .map(|series| Series {
+            subject: series.subject.clone(),
+            specimen: series.specimen(),
+            samples: of(series),
+        })
         .collect()
 }

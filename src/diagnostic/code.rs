@@ -82,6 +82,9 @@ codes! {
     SampleTwice "M04" "sample-time-repeated" Error "a subject has two samples at one time; the first is used";
     SampleMatrix "M05" "sample-matrix-questioned" Warning "a salivary value lies in the range of serum";
     BelowLimit "M06" "below-detection-limit" Note "a sample lies below the limit of detection; half of the limit is used";
+    SampleTimesMixed "M07" "sample-times-mixed" Error "a table of samples writes its times in two ways";
+    SampleWaking "M08" "sample-waking-apart" Error "the waking time does not begin the day of its sample";
+    SampleMatrixUnknown "M09" "sample-matrix-unknown" Warning "the matrix is a word that is not read, and counts as not said";
     Unsupported "X10" "unsupported-format" Fatal "the format of the file is not supported";
     SeveralTables "X09" "several-tables" Fatal "the workbook has several sheets with data";
     Unreadable "F01" "unreadable-file" Fatal "the file cannot be read";

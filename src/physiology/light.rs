@@ -44,9 +44,13 @@ impl LightScenes {
                 "the site file".clone_into(&mut number.source);
             }
         };
+        // The default light at work stands for a task light times the default factor.
+        let usual_task = set.scene.work.value / set.eye.factor.value;
         said(&mut set.eye.factor, site.eye_factor);
         let factor = set.eye.factor.value;
-        said(&mut set.scene.work, site.task.map(|lux| lux.get() * factor));
+        let task = site.task.map(crate::units::Lux::get);
+        let task = task.or(site.eye_factor.map(|_| usual_task));
+        said(&mut set.scene.work, task.map(|lux| lux * factor));
         said(
             &mut set.scene.home_day,
             site.home_day.map(crate::units::Lux::get),

@@ -1,8 +1,8 @@
 //! Rhythms of a table of samples: text, JSON and CSV.
 
 use crate::render::csv::guarded;
-use crate::rhythm::subjects::{RhythmTable, SalivaDay, SubjectRhythm};
-use crate::rhythm::{Component, Cosinor, Population};
+use crate::rhythm::subjects::{RhythmTable, SalivaDay, SpecimenPopulation, SubjectRhythm};
+use crate::rhythm::{Component, Cosinor};
 use serde_json::{Map, Value, json as value};
 use std::io::{self, Write};
 
@@ -13,6 +13,25 @@ fn hours(hours: f64) -> String {
     let minutes = (hours * 60.0).round();
     let of_day = crate::numeric::circular::wrap(minutes, 1440.0);
     format!("{:02.0}:{:02.0}", (of_day / 60.0).floor(), of_day % 60.0)
+}
+
+/// A time after the reference: a clock time within a day, hours where the period is longer.
+fn when(after_h: f64, table: &RhythmTable, period_h: f64) -> String {
+    if period_h > 24.0 + 1e-9 {
+        format!("{:.1} h", crate::numeric::circular::wrap(after_h, period_h))
+    } else {
+        hours(after_h + table.plan.reference_h)
+    }
+}
+
+fn longest(table: &RhythmTable) -> f64 {
+    table
+        .plan
+        .design
+        .periods_h
+        .iter()
+        .copied()
+        .fold(0.0, f64::max)
 }
 
 /// Lines for the terminal.
@@ -26,8 +45,9 @@ pub fn text(table: &RhythmTable, out: &mut impl Write) -> io::Result<()> {
     for subject in &table.subjects {
         writeln!(
             out,
-            "\n{}: {} samples on {} days{}",
+            "\n{} ({}): {} samples on {} days{}",
             subject.subject,
+            subject.specimen,
             subject.n,
             subject.days,
             match subject.below_limit {
@@ -50,14 +70,17 @@ pub fn text(table: &RhythmTable, out: &mut impl Write) -> io::Result<()> {
     {
         writeln!(out, "\n{}", day_counts())?;
     }
-    match &table.population {
-        Some(population) => text_of_population(table, population, out),
-        None => writeln!(
+    if table.populations.is_empty() {
+        writeln!(
             out,
-            "\nNo population: at least {} subjects with a fit are needed.",
+            "\nNo population: at least {} subjects with a fit in one matrix and assay are needed.",
             crate::rhythm::populations::FEWEST_SUBJECTS
-        ),
+        )?;
     }
+    for of in &table.populations {
+        text_of_population(table, of, out)?;
+    }
+    Ok(())
 }
 
 /// What was asked of the table, in words.
@@ -122,9 +145,9 @@ fn text_of_fit(
         writeln!(
             out,
             "  highest at {} ({:.2} nmol/L), lowest at {} ({:.2} nmol/L)",
-            hours(shape.peak_h + table.plan.reference_h),
+            when(shape.peak_h, table, longest(table)),
             shown(shape.peak),
-            hours(shape.trough_h + table.plan.reference_h),
+            when(shape.trough_h, table, longest(table)),
             shown(shape.trough)
         )?;
     }
@@ -154,7 +177,7 @@ fn component_line(table: &RhythmTable, component: &Component) -> String {
     };
     let at = |radians: f64| {
         let turns = -radians / (2.0 * std::f64::consts::PI);
-        hours(turns * component.period_h + table.plan.reference_h)
+        when(turns * component.period_h, table, component.period_h)
     };
     let phase = match component.acrophase_conservative {
         // A later clock time is a more negative acrophase.
@@ -230,12 +253,14 @@ fn text_of_saliva(day: &SalivaDay, out: &mut impl Write) -> io::Result<()> {
 
 fn text_of_population(
     table: &RhythmTable,
-    population: &Population,
+    of: &SpecimenPopulation,
     out: &mut impl Write,
 ) -> io::Result<()> {
+    let population = &of.population;
     let at = |radians: f64| {
         let turns = -radians / (2.0 * std::f64::consts::PI);
-        hours(turns * table.plan.design.periods_h[0] + table.plan.reference_h)
+        let period = table.plan.design.periods_h[0];
+        when(turns * period, table, period)
     };
     // On the log scale the MESOR is geometric and the amplitude a ratio.
     let log = table.plan.log;
@@ -247,8 +272,9 @@ fn text_of_population(
     );
     writeln!(
         out,
-        "\nPopulation of {}: {} {:.2} nmol/L ({:.2} to {:.2}), {} {:.2} ({:.2} to {:.2}; mean of the subjects' own {:.2}), acrophase {} ({limits}), F(2, {:.0}) {:.2}, p {}{}",
+        "\nPopulation of {} ({}): {} {:.2} nmol/L ({:.2} to {:.2}), {} {:.2} ({:.2} to {:.2}; mean of the subjects' own {:.2}), acrophase {} ({limits}), F(2, {:.0}) {:.2}, p {}{}",
         population.k,
+        of.specimen,
         if log { "geometric MESOR" } else { "MESOR" },
         level(population.mesor),
         level(population.mesor_limits.0),
@@ -287,7 +313,7 @@ pub fn json(table: &RhythmTable, version: &str, out: &mut impl Write) -> io::Res
             "unit": "nmol/L",
         },
         "subjects": table.subjects.iter().map(|s| json_subject(table, s)).collect::<Vec<_>>(),
-        "population": table.population.as_ref().map(json_population),
+        "populations": table.populations.iter().map(json_population).collect::<Vec<_>>(),
         "cautions": [CAUTION],
     });
     serde_json::to_writer_pretty(&mut *out, &document)?;
@@ -300,6 +326,7 @@ fn json_subject(table: &RhythmTable, subject: &SubjectRhythm) -> Value {
         object.insert(key.to_owned(), value);
     };
     put("subject", value!(subject.subject));
+    put("specimen", value!(subject.specimen));
     put("n", value!(subject.n));
     put("below_limit", value!(subject.below_limit));
     put("days", value!(subject.days));
@@ -316,6 +343,10 @@ fn json_subject(table: &RhythmTable, subject: &SubjectRhythm) -> Value {
                 .map(|component| json_component(table, component))
                 .collect();
             put("components", value!(components));
+            let longest = longest(table);
+            let clock = |after_h: f64| {
+                crate::numeric::circular::wrap(after_h + table.plan.reference_h, longest)
+            };
             put("f", value!(cosinor.f));
             put("df", value!([cosinor.coefficients.len() - 1, cosinor.df]));
             put("p", value!(cosinor.p));
@@ -326,7 +357,7 @@ fn json_subject(table: &RhythmTable, subject: &SubjectRhythm) -> Value {
             put(
                 "shape",
                 value!(cosinor.shape.map(|shape| value!({
-                    "peak_h": shape.peak_h, "peak": shape.peak, "trough_h": shape.trough_h, "trough": shape.trough,
+                    "peak_h": clock(shape.peak_h), "peak": shape.peak, "trough_h": clock(shape.trough_h), "trough": shape.trough,
                     "magnitude": shape.magnitude, "orthophase_deg": shape.orthophase_deg, "bathyphase_deg": shape.bathyphase_deg,
                 }))),
             );
@@ -381,8 +412,10 @@ fn json_saliva(day: &SalivaDay) -> Value {
     })
 }
 
-fn json_population(population: &Population) -> Value {
+fn json_population(of: &SpecimenPopulation) -> Value {
+    let population = &of.population;
     value!({
+        "specimen": of.specimen,
         "k": population.k,
         "mesor": population.mesor,
         "mesor_ci": [population.mesor_limits.0, population.mesor_limits.1],
@@ -408,6 +441,7 @@ pub fn csv(table: &RhythmTable, out: &mut impl Write) -> io::Result<()> {
         .from_writer(out);
     writer.write_record([
         "subject",
+        "specimen",
         "n",
         "days",
         "below_limit",
@@ -427,6 +461,7 @@ pub fn csv(table: &RhythmTable, out: &mut impl Write) -> io::Result<()> {
     for subject in &table.subjects {
         let head = [
             guarded(&subject.subject),
+            guarded(&subject.specimen),
             subject.n.to_string(),
             subject.days.to_string(),
             subject.below_limit.to_string(),
@@ -440,7 +475,7 @@ pub fn csv(table: &RhythmTable, out: &mut impl Write) -> io::Result<()> {
             Ok(cosinor) => cosinor
                 .components
                 .iter()
-                .map(|component| csv_cells(cosinor, component))
+                .map(|component| csv_cells(table, cosinor, component))
                 .collect(),
         };
         for row in rows {
@@ -450,7 +485,7 @@ pub fn csv(table: &RhythmTable, out: &mut impl Write) -> io::Result<()> {
     writer.flush()
 }
 
-fn csv_cells(cosinor: &Cosinor, component: &Component) -> [String; 12] {
+fn csv_cells(table: &RhythmTable, cosinor: &Cosinor, component: &Component) -> [String; 12] {
     let numbers = [
         cosinor.mesor,
         cosinor.mesor_se,
@@ -460,7 +495,10 @@ fn csv_cells(cosinor: &Cosinor, component: &Component) -> [String; 12] {
         component.amplitude,
         component.amplitude_se,
         component.acrophase_deg(),
-        component.peak_h(),
+        crate::numeric::circular::wrap(
+            component.peak_h() + table.plan.reference_h,
+            component.period_h,
+        ),
         component.peak_se_h(),
         component.p,
     ];

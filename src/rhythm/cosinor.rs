@@ -71,6 +71,9 @@ pub enum Refusal {
         /// Highest accepted.
         limit: f64,
     },
+    /// All values are alike.
+    #[error("all values are alike: there is no rhythm to be fitted")]
+    Constant,
     /// A value or a time is no number.
     #[error("sample {index}: {what} is not a finite number")]
     NotFinite {
@@ -228,6 +231,10 @@ pub fn fit(samples: &[Observation], design: &Design) -> Result<Cosinor, Refusal>
             parameters,
             needed: parameters + 1,
         });
+    }
+    let largest = samples.iter().map(|s| s.value.abs()).fold(0.0, f64::max);
+    if total(samples) <= 1e-20 * largest * largest * as_f64(samples.len()) {
+        return Err(Refusal::Constant);
     }
     let plain = matrix(samples, &design.periods_h);
     let sampling = sampling(&plain, samples, &design.periods_h);
@@ -492,8 +499,14 @@ pub(super) fn as_f64(count: usize) -> f64 {
 
 /// Probability that an F of (a, b) degrees of freedom is at least `f`.
 pub fn fisher_tail(f: f64, a: f64, b: f64) -> f64 {
-    if !f.is_finite() || f <= 0.0 {
-        return if f.is_nan() { f64::NAN } else { 1.0 };
+    if f.is_nan() {
+        return f64::NAN;
+    }
+    if f <= 0.0 {
+        return 1.0;
+    }
+    if f.is_infinite() {
+        return 0.0;
     }
     if (a - 2.0).abs() < 1e-12 {
         return fisher_tail_2(f, b);

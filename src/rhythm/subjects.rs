@@ -3,6 +3,7 @@
 use super::cosinor::{Cosinor, Design, Observation, Refusal, fit};
 use super::populations::{Population, Vector, population};
 use super::saliva::{Areas, RESPONSE_MIN, SalivaSample, SlopeKind, Timing, areas, slope, timing};
+use std::collections::BTreeMap;
 
 /// One sample of a subject.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -15,6 +16,17 @@ pub struct SubjectSample {
     pub below_limit: bool,
     /// Waking of that day, in the same hours.
     pub waking_h: Option<f64>,
+}
+
+/// What was measured of one subject in one specimen.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Series {
+    /// Name of the subject.
+    pub subject: String,
+    /// Matrix and assay in words: values of two specimens are never put together.
+    pub specimen: String,
+    /// Samples, ascending in time.
+    pub samples: Vec<SubjectSample>,
 }
 
 /// What is asked of a table.
@@ -33,6 +45,8 @@ pub struct Plan {
 pub struct SubjectRhythm {
     /// Name.
     pub subject: String,
+    /// Matrix and assay in words.
+    pub specimen: String,
     /// Samples used.
     pub n: usize,
     /// Of these below the limit of detection.
@@ -79,8 +93,17 @@ pub struct RhythmTable {
     pub plan: Plan,
     /// By subject.
     pub subjects: Vec<SubjectRhythm>,
-    /// Of the first period, where at least three subjects have a fit.
-    pub population: Option<Population>,
+    /// Of the first period, one for every specimen of which at least three subjects have a fit.
+    pub populations: Vec<SpecimenPopulation>,
+}
+
+/// The population of one specimen.
+#[derive(Debug, Clone, PartialEq)]
+pub struct SpecimenPopulation {
+    /// Matrix and assay in words.
+    pub specimen: String,
+    /// Its subjects together.
+    pub population: Population,
 }
 
 /// Rhythms of subjects and their population.
@@ -88,37 +111,49 @@ pub struct RhythmTable {
 /// # Example
 ///
 /// ```
-/// use acroshift::rhythm::subjects::{analyse, Plan, SubjectSample};
+/// use acroshift::rhythm::subjects::{analyse, Plan, Series, SubjectSample};
 /// use acroshift::rhythm::Design;
 /// let samples: Vec<SubjectSample> = [(7.0, 14.0), (11.0, 7.0), (15.0, 5.0), (19.0, 3.0), (23.0, 2.0)]
 ///     .map(|(time_h, nmol_l)| SubjectSample { time_h, nmol_l, below_limit: false, waking_h: None })
 ///     .to_vec();
 /// let plan = Plan { design: Design::of(&[24.0]), log: true, reference_h: 0.0 };
-/// let table = analyse(&[("A".to_owned(), samples)], plan);
-/// assert!(table.subjects[0].cosinor.is_ok() && table.population.is_none());
+/// let series = Series { subject: "A".to_owned(), specimen: "saliva".to_owned(), samples };
+/// let table = analyse(&[series], plan);
+/// assert!(table.subjects[0].cosinor.is_ok() && table.populations.is_empty());
 /// ```
-pub fn analyse(subjects: &[(String, Vec<SubjectSample>)], plan: Plan) -> RhythmTable {
-    let subjects: Vec<SubjectRhythm> = subjects
-        .iter()
-        .map(|(name, samples)| one(name, samples, &plan))
-        .collect();
-    let vectors: Vec<Vector> = subjects
-        .iter()
-        .filter_map(|subject| subject.cosinor.as_ref().ok())
-        .map(|cosinor| Vector {
-            mesor: cosinor.mesor,
-            beta: cosinor.components[0].beta,
-            gamma: cosinor.components[0].gamma,
-        })
-        .collect();
+pub fn analyse(series: &[Series], plan: Plan) -> RhythmTable {
+    let subjects: Vec<SubjectRhythm> = series.iter().map(|series| one(series, &plan)).collect();
     RhythmTable {
-        population: population(&vectors, plan.design.level),
+        populations: populations(&subjects, plan.design.level),
         subjects,
         plan,
     }
 }
 
-fn one(name: &str, samples: &[SubjectSample], plan: &Plan) -> SubjectRhythm {
+fn populations(subjects: &[SubjectRhythm], level: f64) -> Vec<SpecimenPopulation> {
+    let mut vectors: BTreeMap<&str, Vec<Vector>> = BTreeMap::new();
+    for subject in subjects {
+        if let Ok(cosinor) = &subject.cosinor {
+            vectors.entry(&subject.specimen).or_default().push(Vector {
+                mesor: cosinor.mesor,
+                beta: cosinor.components[0].beta,
+                gamma: cosinor.components[0].gamma,
+            });
+        }
+    }
+    vectors
+        .into_iter()
+        .filter_map(|(specimen, vectors)| {
+            Some(SpecimenPopulation {
+                specimen: specimen.to_owned(),
+                population: population(&vectors, level)?,
+            })
+        })
+        .collect()
+}
+
+fn one(series: &Series, plan: &Plan) -> SubjectRhythm {
+    let samples = &series.samples[..];
     let observations: Vec<Observation> = samples
         .iter()
         .map(|sample| Observation {
@@ -132,7 +167,8 @@ fn one(name: &str, samples: &[SubjectSample], plan: &Plan) -> SubjectRhythm {
         })
         .collect();
     SubjectRhythm {
-        subject: name.to_owned(),
+        subject: series.subject.clone(),
+        specimen: series.specimen.clone(),
         n: samples.len(),
         below_limit: samples.iter().filter(|s| s.below_limit).count(),
         days: days(samples).len(),

@@ -132,17 +132,21 @@ pub fn days(
             let next = date.succ_opt().unwrap_or(date);
             let (start, end) = (minute(midnight(zone, date)), minute(midnight(zone, next)));
             let at = |hour: f64| minute(instant_of(zone, date.and_time(time_of(hour))));
+            let utc_date = match source {
+                DaylightSource::Sun(place) => utc_date_of_noon(date, (start, end), place, minute),
+                DaylightSource::ClockHours { .. } => date,
+            };
             let (sunrise, sunset) = match source {
                 DaylightSource::ClockHours {
                     sunrise_h,
                     sunset_h,
                 } => (at(sunrise_h), at(sunset_h)),
-                DaylightSource::Sun(place) => match daylight(date.num_days_from_ce(), place) {
+                DaylightSource::Sun(place) => match daylight(utc_date.num_days_from_ce(), place) {
                     Daylight::Between {
                         sunrise_min,
                         sunset_min,
                     } => {
-                        let midnight = minute(midnight(Tz::UTC, date));
+                        let midnight = minute(midnight(Tz::UTC, utc_date));
                         let after = |m: f64| Minute::nearest(midnight.as_f64() + m);
                         (after(sunrise_min), after(sunset_min))
                     }
@@ -160,6 +164,26 @@ pub fn days(
         })
         .filter(|day| day.start < day.end)
         .collect()
+}
+
+/// The UTC date whose solar noon lies nearest to the middle of a local date: beside the date line the two differ.
+fn utc_date_of_noon(
+    date: NaiveDate,
+    (start, end): (Minute, Minute),
+    place: Place,
+    minute: impl Fn(DateTime<Utc>) -> Minute,
+) -> NaiveDate {
+    let middle = f64::midpoint(start.as_f64(), end.as_f64());
+    let off = |candidate: &NaiveDate| {
+        let noon =
+            minute(midnight(Tz::UTC, *candidate)).as_f64() + 720.0 - 4.0 * place.longitude_deg;
+        (noon - middle).abs()
+    };
+    [date.pred_opt(), Some(date), date.succ_opt()]
+        .into_iter()
+        .flatten()
+        .min_by(|a, b| off(a).total_cmp(&off(b)))
+        .unwrap_or(date)
 }
 
 #[expect(

@@ -294,6 +294,12 @@ type Complaint = (String, String);
 
 fn check(experiment: &Experiment) -> Result<(), Complaint> {
     check_baseline(&experiment.baseline).map_err(|problem| ("baseline".to_owned(), problem))?;
+    if experiment.condition.iter().any(|c| {
+        c.days.is_empty() && c.cycle.is_none() && sleeps_at_noon(c.life_before(experiment))
+    }) {
+        let problem = "habitual sleep covers noon, at which duties are entered awake".to_owned();
+        return Err(("baseline".to_owned(), problem));
+    }
     for condition in &experiment.condition {
         check_condition(condition)
             .map_err(|problem| (format!("condition \"{}\"", condition.name), problem))?;
@@ -319,6 +325,11 @@ fn check(experiment: &Experiment) -> Result<(), Complaint> {
         }
     }
     Ok(())
+}
+
+fn sleeps_at_noon(baseline: &Baseline) -> bool {
+    let wrap = |hours: f64| crate::numeric::circular::wrap(hours, 24.0);
+    wrap(12.0 - baseline.bed) < wrap(baseline.wake - baseline.bed)
 }
 
 fn check_baseline(baseline: &Baseline) -> Result<(), String> {

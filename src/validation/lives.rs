@@ -118,7 +118,9 @@ fn with_habits(
                     ..member
                 }
             } else {
-                let later = baseline.bed - habit.bed.value;
+                // Bedtimes after midnight are counted on from 24.
+                let bed = baseline.bed + if baseline.bed < 12.0 { 24.0 } else { 0.0 };
+                let later = bed - habit.bed.value;
                 let longer = need_h - habit.need.value;
                 Member {
                     bed_h: member.bed_h + later,
@@ -300,16 +302,18 @@ fn day_of(
     sets: &ModelSets,
     habits: Habits,
 ) -> Vec<(i64, bool, f64)> {
-    let at = |hour: f64| -> (bool, f64) {
+    // Hours become minutes before anything is compared.
+    let minute_of = |hour: f64| Minute::nearest(hour * 60.0).0;
+    let at = |minute: i64| -> (bool, f64) {
         let block = given.and_then(|blocks| {
             blocks
                 .iter()
-                .find(|(from, to, ..)| (*from..*to).contains(&hour))
+                .find(|(from, to, ..)| (minute_of(*from)..minute_of(*to)).contains(&minute))
         });
         match block {
             Some((_, _, state, lux)) => (*state == State::Asleep, *lux),
-            None if given.is_none() && sleeps(baseline, hour) => (true, 0.0),
-            None => (false, baseline_lux(baseline, sets, habits, hour)),
+            None if given.is_none() && sleeps(baseline, minute) => (true, 0.0),
+            None => (false, baseline_lux(baseline, sets, habits, minute)),
         }
     };
     let mut edges = vec![
@@ -323,36 +327,38 @@ fn day_of(
     edges.extend(given.unwrap_or_default().iter().flat_map(|b| [b.0, b.1]));
     let mut minutes: Vec<i64> = edges
         .iter()
-        .map(|hour| Minute::nearest(hour * 60.0).0.rem_euclid(DAY_MIN))
+        .map(|hour| minute_of(*hour).rem_euclid(DAY_MIN))
         .collect();
     minutes.sort_unstable();
     minutes.dedup();
     minutes
         .into_iter()
         .map(|minute| {
-            let (asleep, lux) = at(minutes_to_hours(minute));
+            let (asleep, lux) = at(minute);
             (minute, asleep, lux)
         })
         .collect()
 }
 
-fn sleeps(baseline: &Baseline, hour: f64) -> bool {
-    let hours = crate::numeric::circular::wrap(baseline.wake - baseline.bed, 24.0);
-    crate::numeric::circular::wrap(hour - baseline.bed, 24.0) < hours - 1e-9
+fn sleeps(baseline: &Baseline, minute: i64) -> bool {
+    let minute_of = |hour: f64| Minute::nearest(hour * 60.0).0;
+    let (bed, wake) = (minute_of(baseline.bed), minute_of(baseline.wake));
+    (minute - bed).rem_euclid(DAY_MIN) < (wake - bed).rem_euclid(DAY_MIN)
 }
 
-fn baseline_lux(baseline: &Baseline, sets: &ModelSets, habits: Habits, hour: f64) -> f64 {
+fn baseline_lux(baseline: &Baseline, sets: &ModelSets, habits: Habits, minute: i64) -> f64 {
+    let minute_of = |hour: f64| Minute::nearest(hour * 60.0).0;
     if let Some(last) = baseline.light.last() {
         // Before the first hour of the list the light of its last one holds.
         return baseline
             .light
             .iter()
             .rev()
-            .find(|(from, _)| *from <= hour)
+            .find(|(from, _)| minute_of(*from) <= minute)
             .map_or(last.1, |(_, lux)| *lux);
     }
     let scene = &sets.light.scene;
-    if (habits.sunrise_h..habits.sunset_h).contains(&hour) {
+    if (minute_of(habits.sunrise_h)..minute_of(habits.sunset_h)).contains(&minute) {
         scene.home_day.value
     } else {
         scene.home_evening.value

@@ -122,8 +122,9 @@ fn of_track(reading: Reading, track: &MemberTrack) -> f64 {
     let dlmo_h = (track.habitual_cbtmin_min - 7.0 * 60.0) / 60.0;
     match reading {
         Reading::CbtminShift { at } => track.displacement(track.cbtmin_nearest(at * 60.0)).hours(),
+        // Counted from the clock hour of `at`, so that midnight parts no members.
         Reading::CbtminClock { at } => {
-            crate::numeric::circular::wrap(track.cbtmin_nearest(at * 60.0) / 60.0, 24.0)
+            crate::numeric::circular::wrap(at, 24.0) + track.cbtmin_nearest(at * 60.0) / 60.0 - at
         }
         Reading::DlmoLead => crate::numeric::circular::wrap_half(track.member.bed_h - dlmo_h, 24.0),
         // DLMO lies in the evening or after midnight: hours from noon on.

@@ -150,6 +150,79 @@ fn fourteen_long_nights_without_daylight_put_the_morning_outside() {
 }
 
 #[test]
+fn a_sample_beyond_the_roster_is_refused_even_with_a_stated_clock() {
+    let stated = |day, hour| SampleQuestion {
+        stated: Some(Stated {
+            cbtmin_h: 4.0,
+            sleep_h: (23.0, 7.0),
+        }),
+        ..question(at(day, hour, 0), Specimen::Serum)
+    };
+    // The last day duty is that of day 18.
+    assert!(ask(DAYS, &stated(18, 23), "").is_ok());
+    for day in [19, 60] {
+        let beyond = ask(DAYS, &stated(day, 9), "");
+        assert!(
+            matches!(
+                beyond,
+                Err(SampleRefusal::NotPlaced(NotPlaced::OutsideRoster))
+            ),
+            "{beyond:?}"
+        );
+    }
+}
+
+#[test]
+fn a_stated_clock_keeps_local_hours_over_the_change_to_summer_time() {
+    // Sunday 29 March 2026, 01:00 UTC: clocks of London go forward.
+    let mut csv = String::from("worker,date,start,end\n");
+    for day in 20..=31 {
+        writeln!(csv, "P,2026-03-{day},08:00,16:00").unwrap();
+    }
+    let roster = read(&csv, "Europe/London").roster.unwrap();
+    let standing = |day: u32| {
+        let question = SampleQuestion {
+            stated: Some(Stated {
+                cbtmin_h: 4.0,
+                sleep_h: (23.0, 7.0),
+            }),
+            ..question(
+                NaiveDate::from_ymd_opt(2026, 3, day)
+                    .unwrap()
+                    .and_hms_opt(9, 0, 0)
+                    .unwrap(),
+                Specimen::Serum,
+            )
+        };
+        let (placed, _) = sample(&roster, &screening(&[]), &question).unwrap();
+        placed.standing
+    };
+    for day in [27, 30] {
+        let standing = standing(day);
+        assert!((standing.since_waking_h.median - 2.0).abs() < 1e-9, "{day}");
+        assert!((standing.since_cbtmin_h.median - 5.0).abs() < 1e-9, "{day}");
+    }
+}
+
+#[test]
+fn a_stated_clock_has_next_windows_of_its_own() {
+    let asked = SampleQuestion {
+        stated: Some(Stated {
+            cbtmin_h: 4.0,
+            sleep_h: (23.0, 7.0),
+        }),
+        next: true,
+        ..question(at(3, 0, 0), Specimen::Serum)
+    };
+    let read = read(&roster(DAYS), "UTC");
+    let (_, spans) = sample(&read.roster.unwrap(), &screening(&[]), &asked).unwrap();
+    // CBTmin + 3 to + 7 h is 07:00 to 11:00; 1.5 to 5 h after waking leaves 08:30 to 11:00.
+    let (from, to) = spans.unwrap()[0];
+    let local = (from.naive_local(), to.naive_local());
+    assert_eq!(local, (at(3, 8, 30), at(3, 11, 15)));
+}
+
+#[test]
 fn saliva_has_a_band_of_its_own() {
     let placed = ask(DAYS, &question(at(13, 9, 0), Specimen::Saliva), "").unwrap();
     // About 15 nmol/L of parotid saliva at 08:00.
@@ -260,7 +333,7 @@ fn the_rhythm_command_fits_refuses_and_tells() {
     let json: serde_json::Value = serde_json::from_str(&results(&fitted)).unwrap();
     assert_eq!(json["schema"], "acroshift.rhythm/1");
     assert_eq!(json["subjects"].as_array().unwrap().len(), 3);
-    assert_eq!(json["population"]["k"], 3);
+    assert_eq!(json["populations"][0]["k"], 3);
     let text = results(&run(&["rhythm", saliva]));
     assert!(text.contains("waking response") && text.contains("weak sampling"));
     let rows = results(&run(&["rhythm", saliva, "--format", "csv"]));

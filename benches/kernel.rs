@@ -15,7 +15,7 @@ use acroshift::physiology::pacemaker::{LANES, MarkerReader, Pacemaker, UnitDrive
 use acroshift::physiology::{
     Engine, Member, ModelSets, PacemakerName, Sampling, Simulation, members,
 };
-use acroshift::timeline::{CivilClock, CivilDay, DutySpan, HabitFile, Timeline};
+use acroshift::timeline::{CivilClock, CivilDay, DutySpan, HabitFile, MeasuredLight, Timeline};
 use acroshift::units::{ClockHour, Minute, minutes_to_hours};
 use chrono::{Days, NaiveDate};
 use std::hint::black_box;
@@ -174,6 +174,7 @@ fn night_blocks(days: u32, shift: u32) -> Timeline {
             })
             .collect(),
         clock: CivilClock::steady(),
+        measured: MeasuredLight::default(),
         end: Minute(days * DAY),
         habits: HabitFile::embedded().habits(),
     }

@@ -10,7 +10,7 @@ use crate::physiology::pacemaker::LANES;
 use crate::physiology::parameters::{BindingSet, SampleBandSet};
 use crate::physiology::{CORTISOL_STEP_MIN, Engine, Member, MemberTrack, ModelSets, SleepEpisode};
 use crate::timeline::stress::hours_at_night;
-use crate::timeline::{DutySpan, Timeline};
+use crate::timeline::{DutySpan, MeasuredLight, Timeline};
 use crate::units::{Minute, minutes_to_hours};
 
 /// What was or will be sampled.
@@ -215,6 +215,7 @@ impl Lived {
         let warm = engine.warm_up(frame.members, &timeline.habits);
         let free = Timeline {
             duties: Vec::new(),
+            measured: MeasuredLight::default(),
             ..timeline.clone()
         };
         Ok(Self {

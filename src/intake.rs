@@ -4,6 +4,7 @@
 //! A bad row takes its worker's dates out of judgement, never another worker's.
 
 pub mod clock_text;
+pub mod light_log;
 pub mod long_table;
 pub mod samples;
 pub mod site;

@@ -47,8 +47,8 @@ use physiology::parameters::SampleBandSet;
 use physiology::{ModelSets, PacemakerName, Sampling};
 use report::pacemakers::Beside;
 use report::{Audience, ReportInput, RunFacts, ScreenReport};
-use roster::Roster;
-use timeline::{Axis, HabitFile, SiteScene, Timeline};
+use roster::{Roster, WorkerId};
+use timeline::{Axis, HabitFile, LightLogs, SiteScene, Timeline};
 
 /// How a roster is screened.
 #[derive(Debug, Clone, PartialEq)]
@@ -67,6 +67,8 @@ pub struct Screening {
     pub sets: ModelSets,
     /// Pacemakers whose phase is shown beside it.
     pub beside: Vec<PacemakerName>,
+    /// Light measured on workers: personal, and not used for the planner.
+    pub light_logs: LightLogs,
 }
 
 /// Names and SHA-256 of the input files, in the order in which they were read.
@@ -92,6 +94,7 @@ pub type InputHashes = [(String, String)];
 ///     seed: 1,
 ///     sets: ModelSets::embedded(),
 ///     beside: Vec::new(),
+///     light_logs: acroshift::timeline::LightLogs::default(),
 /// };
 /// let roster = read.roster.expect("the file is in order");
 /// let report = screen(&roster, &read.diagnostics, &[], &screening).expect("there are shifts");
@@ -108,10 +111,10 @@ pub fn screen(
     let habit_file = HabitFile::embedded();
     let criteria = Criteria::embedded();
 
-    // A commute is the worker's own: the planner's generic adult does not have it.
-    let generic = match screening.audience {
-        Audience::Planner => Some(roster.without_commutes()),
-        Audience::Clinician => None,
+    // Commute and measured light are the worker's own: the planner's generic adult does not have them.
+    let (generic, logs) = match screening.audience {
+        Audience::Planner => (Some(roster.without_commutes()), &LightLogs::default()),
+        Audience::Clinician => (None, &screening.light_logs),
     };
     let roster = generic.as_ref().unwrap_or(roster);
 
@@ -122,10 +125,16 @@ pub fn screen(
         axis,
         members,
     } = &setting(roster, screening)?;
-    let lines = roster::lines(roster, scene.habits.join_gap_min);
+    let name = |worker: WorkerId| roster.workers[worker.index()].name.as_str();
+    let lines = roster::lines(roster, scene.habits.join_gap_min, |worker| {
+        logs.hold(name(worker))
+    });
     let timelines: Vec<Timeline> = lines
         .iter()
-        .map(|line| timeline::timeline(roster, line.workers[0], axis, scene))
+        .map(|line| {
+            let worker = line.workers[0];
+            timeline::timeline(roster, worker, axis, scene).under(logs.of(name(worker), axis))
+        })
         .collect();
 
     // Each line is lived by the same ensemble.
@@ -164,6 +173,7 @@ pub fn screen(
             members: members.len(),
             seed: screening.seed,
             morning_daylight: screening.site.morning_daylight,
+            measured_light: logs.workers(),
             place: screening.site.place,
         },
     }))
@@ -260,7 +270,8 @@ pub fn sample(
     let worker = roster
         .worker_named(&question.worker)
         .ok_or_else(|| SampleRefusal::UnknownWorker(question.worker.clone()))?;
-    let timeline = timeline::timeline(roster, worker, axis, scene);
+    let timeline = timeline::timeline(roster, worker, axis, scene)
+        .under(screening.light_logs.of(&question.worker, axis));
     let frame = biological_time::Frame {
         timeline: &timeline,
         last: axis.last_end(),

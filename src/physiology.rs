@@ -102,7 +102,7 @@ pub struct MelatoninMarkers {
 ///
 /// ```
 /// use acroshift::physiology::{simulate, Member, ModelSets};
-/// use acroshift::timeline::{CivilClock, HabitFile, Timeline};
+/// use acroshift::timeline::{CivilClock, HabitFile, MeasuredLight, Timeline};
 /// use acroshift::units::Minute;
 ///
 /// let sets = ModelSets::embedded();
@@ -112,6 +112,7 @@ pub struct MelatoninMarkers {
 ///     clock: CivilClock::steady(),
 ///     end: Minute(1440),
 ///     habits: HabitFile::embedded().habits(),
+///     measured: MeasuredLight::default(),
 /// };
 /// let simulations = simulate(&[free], &[Member::mean(&sets.ensemble, 30.0)], &sets);
 /// // The mean member sleeps from 23:00 on the day before the first date.

@@ -75,6 +75,8 @@ pub struct RunFacts {
     pub seed: u64,
     /// What the site says of morning daylight on the way home.
     pub morning_daylight: Option<bool>,
+    /// Workers whose light was measured.
+    pub measured_light: usize,
     /// Where the workplace is, for daylight.
     pub place: Option<Place>,
 }
@@ -189,11 +191,21 @@ fn provenance(input: &ReportInput<'_>) -> Provenance {
                 ClockHour::wrapping(input.habits.daylight.sunset.value)
             ),
         },
-        morning_daylight: match input.run.morning_daylight {
-            Some(true) => "seen on the way home after nights".to_owned(),
-            Some(false) => "kept out on the way home after nights".to_owned(),
-            None => "unknown: seen by half of the members, kept out by the other half".to_owned(),
-        },
+        morning_daylight: morning_daylight(input.run),
+    }
+}
+
+/// What is known of the light after nights, in words.
+fn morning_daylight(run: &RunFacts) -> String {
+    let known = match run.morning_daylight {
+        Some(true) => "seen on the way home after nights",
+        Some(false) => "kept out on the way home after nights",
+        None => "unknown: seen by half of the members, kept out by the other half",
+    };
+    match run.measured_light {
+        0 => known.to_owned(),
+        1 => format!("{known}; measured for 1 worker, where there are readings"),
+        workers => format!("{known}; measured for {workers} workers, where there are readings"),
     }
 }
 

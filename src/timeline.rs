@@ -6,12 +6,14 @@
 pub mod civil;
 pub mod habits;
 pub mod light;
+pub mod measured_light;
 pub mod plan;
 pub mod stress;
 
 pub use civil::{CivilClock, CivilDay, DaylightSource};
 pub use habits::{HabitFile, Habits};
 pub use light::SiteLight;
+pub use measured_light::{LightLogs, MeasuredLight};
 pub use stress::Stress;
 
 use crate::numeric::sun::{Place, Sky, elevation_deg, horizontal_illuminance_lux};
@@ -54,9 +56,17 @@ pub struct Timeline {
     pub end: Minute,
     /// Time around duty.
     pub habits: Habits,
+    /// Light measured on this person, which takes the place of the scene.
+    pub measured: MeasuredLight,
 }
 
 impl Timeline {
+    /// The same person with measured light.
+    #[must_use]
+    pub fn under(self, measured: MeasuredLight) -> Self {
+        Self { measured, ..self }
+    }
+
     /// Is it light outdoors at `minute`?
     pub fn daylight_at(&self, minute: Minute) -> bool {
         let index = self.days.partition_point(|day| day.end <= minute);
@@ -192,6 +202,7 @@ pub fn timeline(roster: &Roster, worker: WorkerId, axis: &Axis, scene: &SiteScen
         clock: axis.clock.clone(),
         end,
         habits: with_daylight_of_first_date(scene.habits, axis),
+        measured: MeasuredLight::default(),
     }
 }
 

@@ -110,6 +110,10 @@ pub(crate) struct SampleOptions {
     #[arg(long, value_name = "SITE.toml")]
     pub(crate) site: Option<PathBuf>,
 
+    /// Light measured at the eye: a table of worker, time, lux.
+    #[arg(long, value_name = "LIGHT.csv")]
+    pub(crate) light_log: Option<PathBuf>,
+
     /// Simulated people; rounded up to a multiple of 8.
     #[arg(long, value_name = "N", default_value_t = 64, value_parser = clap::value_parser!(u16).range(1..=4096))]
     pub(crate) members: u16,
@@ -245,6 +249,10 @@ pub(crate) struct ScreenOptions {
     /// Site file: zone, rules, task light, commute, morning daylight, declared derogations.
     #[arg(long, value_name = "SITE.toml")]
     pub(crate) site: Option<PathBuf>,
+
+    /// Light measured at the eye: a table of worker, time, lux; for the clinician only.
+    #[arg(long, value_name = "LIGHT.csv")]
+    pub(crate) light_log: Option<PathBuf>,
 
     /// Rule packs, separated by commas [default: eu-wtd,adv-nordic].
     ///

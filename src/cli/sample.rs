@@ -35,7 +35,9 @@ pub(super) fn run(options: &SampleOptions) -> Result<Ending, Stop> {
         zone: zone.or(site.zone),
         ..Reading::default()
     };
-    let read = files::rosters(&files::read(&options.rosters), &reading);
+    let mut read = files::rosters(&files::read(&options.rosters), &reading);
+    let light = files::light_log(options.light_log.as_deref(), read.roster.as_ref());
+    read.diagnostics.extend(light.diagnostics);
     let mut messages = Vec::new();
     let urgent: Vec<_> = diagnostics::rows(&read.diagnostics)
         .into_iter()
@@ -54,6 +56,7 @@ pub(super) fn run(options: &SampleOptions) -> Result<Ending, Stop> {
         seed: options.seed,
         sets: ModelSets::embedded(),
         beside: Vec::new(),
+        light_logs: light.logs,
     };
     let (placed, next) = sample(&roster, &screening, &question).map_err(|refusal| Stop {
         ending: Ending::Input,

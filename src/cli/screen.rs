@@ -18,6 +18,11 @@ use std::io::Write;
 /// Runs the command.
 pub(super) fn run(options: &ScreenOptions) -> Result<Ending, Stop> {
     use_threads(options)?;
+    if options.light_log.is_some() && options.audience == AudienceName::Planner {
+        return Err(Stop::usage(
+            "measured light is of a person, and the planner's generic adult has none; give --audience clinician",
+        ));
+    }
     let site = files::site(options.site.as_deref())?;
     let packs = packs(options, &site)?;
     check_derogations(&site, &packs)?;
@@ -27,12 +32,15 @@ pub(super) fn run(options: &ScreenOptions) -> Result<Ending, Stop> {
     }
     let files = files::read(&options.rosters);
     // Files that could not be read have no place among the inputs, here as in the intake.
+    let mut read = files::rosters(&files, &reading);
+    let light = files::light_log(options.light_log.as_deref(), read.roster.as_ref());
+    read.diagnostics.extend(light.diagnostics);
     let hashes: Vec<(String, String)> = files
         .iter()
+        .chain(&light.file)
         .filter(|file| file.refused.is_none())
         .map(|file| (file.name.clone(), sha256(&file.bytes)))
         .collect();
-    let read = files::rosters(&files, &reading);
     let rows = diagnostics::rows(&read.diagnostics);
     let unusable = has_errors(&read.diagnostics) && !options.allow_partial;
     // Notes are told in the report; on the terminal only what asks for a decision.
@@ -52,6 +60,7 @@ pub(super) fn run(options: &ScreenOptions) -> Result<Ending, Stop> {
         seed: options.seed,
         sets: parameters::sets(options.pacemaker, &options.parameters)?,
         beside: options.pacemaker.names().split_off(1),
+        light_logs: light.logs,
     };
     let usable = read.roster.as_ref().filter(|_| !unusable);
     let report = usable.and_then(|roster| screen(roster, &read.diagnostics, &hashes, &screening));

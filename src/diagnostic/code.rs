@@ -85,6 +85,8 @@ codes! {
     SampleTimesMixed "M07" "sample-times-mixed" Error "a table of samples writes its times in two ways";
     SampleWaking "M08" "sample-waking-apart" Error "the waking time does not begin the day of its sample";
     SampleMatrixUnknown "M09" "sample-matrix-unknown" Warning "the matrix is a word that is not read, and counts as not said";
+    LightUnusable "L01" "light-unusable" Error "the reading is no illuminance from 0 to 200000 lux";
+    LightWorker "L02" "light-worker-unknown" Error "the roster has no worker of this name, so the reading is not used";
     Unsupported "X10" "unsupported-format" Fatal "the format of the file is not supported";
     SeveralTables "X09" "several-tables" Fatal "the workbook has several sheets with data";
     Unreadable "F01" "unreadable-file" Fatal "the file cannot be read";

@@ -164,13 +164,13 @@ impl Life for HabitualLife {
 /// ```
 /// use acroshift::physiology::coupled::{live, warm_up};
 /// use acroshift::physiology::{coupled_models, Member, ModelSets};
-/// use acroshift::timeline::{CivilClock, HabitFile, Timeline};
+/// use acroshift::timeline::{CivilClock, HabitFile, MeasuredLight, Timeline};
 /// use acroshift::units::Minute;
 /// let sets = ModelSets::embedded();
 /// let models = coupled_models(&sets);
 /// let habits = HabitFile::embedded().habits();
 /// let warm = warm_up(&models, &[Member::mean(&sets.ensemble, 30.0)], &habits);
-/// let free = Timeline { duties: Vec::new(), days: Vec::new(), clock: CivilClock::steady(), end: Minute(1440), habits };
+/// let free = Timeline { duties: Vec::new(), days: Vec::new(), clock: CivilClock::steady(), end: Minute(1440), habits, measured: MeasuredLight::default() };
 /// let track = &live(&models, &warm, &free)[0];
 /// // The last CBTmin before the entry stands at 03:32 (reference case of the sleep mechanism).
 /// assert!((track.habitual_cbtmin_min / 60.0 + 24.0 - 3.5326).abs() < 0.01);
@@ -288,7 +288,8 @@ impl<'a> Person<'a> {
             .after_night_duty
             .is_some_and(|end| self.sleeper.last_wake() < end.0);
         let at_work = matches!(segment.place, Place::Duty(_));
-        if on_the_way_home && !at_work && !self.member.sees_morning_daylight {
+        let measured = segment.measured.is_some();
+        if on_the_way_home && !at_work && !measured && !self.member.sees_morning_daylight {
             lux.min(light.morning_kept_out())
         } else {
             lux

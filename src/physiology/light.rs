@@ -92,8 +92,11 @@ impl LightScenes {
         self.morning_kept_out_lux
     }
 
-    /// The light of a waking stretch.
+    /// The light of a waking stretch: as measured, else that of the scene.
     pub fn awake(&self, segment: &Segment, timeline: &Timeline) -> f64 {
+        if let Some(measured) = segment.measured {
+            return measured.get();
+        }
         match segment.place {
             Place::Duty(index) => timeline.duties[index]
                 .light

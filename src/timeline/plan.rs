@@ -10,7 +10,7 @@
 //! ```
 
 use super::{DutySpan, Timeline};
-use crate::units::Minute;
+use crate::units::{Lux, Minute};
 use std::collections::BTreeSet;
 
 /// Where the person is.
@@ -30,7 +30,7 @@ pub enum Place {
 }
 
 /// A stretch of elapsed time in which nothing changes but sleep.
-#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+#[derive(Debug, Clone, Copy, PartialEq)]
 pub struct Segment {
     /// First minute.
     pub from: Minute,
@@ -40,6 +40,8 @@ pub struct Segment {
     pub place: Place,
     /// Is it light outdoors?
     pub daylight: bool,
+    /// Light at the eye, where it was measured.
+    pub measured: Option<Lux>,
     /// Sleep opportunity: off duty, home, and past personal time.
     pub sleep_possible: bool,
     /// Latest waking before the next duty, if there is one.
@@ -140,6 +142,7 @@ fn edges(
         edges.extend([day.sunrise, day.sunset].map(|edge| on_grid(edge.as_f64())));
     }
     edges.extend(timeline.clock.changes());
+    edges.extend(timeline.measured.edges());
     edges
         .into_iter()
         .filter(|edge| (start..=timeline.end).contains(edge))
@@ -177,6 +180,7 @@ fn segment(timeline: &Timeline, around: &[Around], from: Minute, to: Minute) -> 
         to,
         place,
         daylight: timeline.daylight_at(from),
+        measured: timeline.measured.at(from),
         sleep_possible: !on_duty && home_again && alarm.is_none_or(|alarm| from < alarm),
         alarm,
         after_night_duty: previous

@@ -9,7 +9,7 @@ use crate::physiology::unit::{Clocks, Life, Marker, Scene};
 use crate::physiology::{
     CORTISOL_STEP_MIN, Engine, Member, MemberTrack, ModelSets, Sampling, SleepEpisode, members,
 };
-use crate::timeline::{CivilClock, CivilDay, DutySpan, Habits, Timeline};
+use crate::timeline::{CivilClock, CivilDay, DutySpan, Habits, MeasuredLight, Timeline};
 use crate::units::{ClockHour, Lux, Minute, minutes_to_hours};
 use chrono::{Days, NaiveDate};
 
@@ -195,6 +195,7 @@ fn timeline(condition: &Condition, habits: Habits) -> Timeline {
         clock: CivilClock::steady(),
         end,
         habits,
+        measured: MeasuredLight::default(),
     }
 }
 

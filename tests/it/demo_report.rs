@@ -73,7 +73,7 @@ fn a_third_of_an_hour_of_sleep_changes_few_classes() {
         habits,
     };
     let axis = Axis::of(&roster, &scene).unwrap();
-    let lines = lines(&roster, habits.join_gap_min);
+    let lines = lines(&roster, habits.join_gap_min, |_| false);
     let timelines: Vec<_> = lines
         .iter()
         .map(|line| timeline(&roster, line.workers[0], &axis, &scene))

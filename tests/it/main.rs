@@ -12,6 +12,7 @@ mod demo_report;
 mod demo_ward;
 mod dependencies;
 mod documentation;
+mod light_log;
 mod output_folder;
 mod physiology_options;
 mod pictures;

@@ -5,6 +5,7 @@ use acroshift::intake::site::Site;
 use acroshift::intake::{self, Input, Intake, Reading};
 use acroshift::physiology::ModelSets;
 use acroshift::report::{Audience, ScreenReport};
+use acroshift::timeline::LightLogs;
 use acroshift::{Screening, screen};
 use chrono::{Days, NaiveDate};
 use std::fmt::Write;
@@ -32,6 +33,7 @@ pub(crate) fn screening(packs: &[&str]) -> Screening {
         seed: 1,
         sets: ModelSets::embedded(),
         beside: Vec::new(),
+        light_logs: LightLogs::default(),
     }
 }
 

@@ -8,7 +8,7 @@ use acroshift::physiology::pacemaker::{LANES, Pacemaker, UnitDrive};
 use acroshift::physiology::{
     Engine, Member, ModelSets, PacemakerName, Sampling, Simulation, members,
 };
-use acroshift::timeline::{CivilClock, CivilDay, DutySpan, HabitFile, Timeline};
+use acroshift::timeline::{CivilClock, CivilDay, DutySpan, HabitFile, MeasuredLight, Timeline};
 use acroshift::units::{ClockHour, Minute, minutes_to_hours};
 use chrono::{Days, NaiveDate};
 
@@ -42,6 +42,7 @@ fn night_blocks(days: i64) -> Timeline {
             })
             .collect(),
         clock: CivilClock::steady(),
+        measured: MeasuredLight::default(),
         end: Minute(days * DAY),
         habits: HabitFile::embedded().habits(),
     }

@@ -7,7 +7,9 @@
 use acroshift::physiology::coupled::{CoupledModels, live, warm_up};
 use acroshift::physiology::sleep::{SLEEP_GRID_MIN, SleepModel};
 use acroshift::physiology::{Member, ModelSets, PacemakerName, coupled_models};
-use acroshift::timeline::{CivilClock, CivilDay, DutySpan, HabitFile, Habits, Timeline};
+use acroshift::timeline::{
+    CivilClock, CivilDay, DutySpan, HabitFile, Habits, MeasuredLight, Timeline,
+};
 use acroshift::units::{ClockHour, Minute, minutes_to_hours};
 use chrono::{Days, NaiveDate};
 use serde_json::Value;
@@ -52,6 +54,7 @@ fn timeline(duties: &[(i64, i64)]) -> Timeline {
             .collect(),
         days,
         clock: CivilClock::steady(),
+        measured: MeasuredLight::default(),
         end: Minute(end),
         habits: Habits {
             personal_share: 0.13,

@@ -6,6 +6,7 @@
 pub mod circular;
 pub mod cosinor;
 pub mod ellipse;
+pub mod groups;
 pub mod populations;
 pub mod regularity;
 pub mod saliva;

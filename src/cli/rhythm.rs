@@ -91,6 +91,7 @@ fn series(samples: &Samples) -> Vec<Series> {
         .map(|series| Series {
             subject: series.subject.clone(),
             specimen: series.specimen(),
+            group: series.group.clone(),
             samples: of(series),
         })
         .collect()

@@ -1,6 +1,6 @@
 //! Tables of measured cortisol: one row per sample.
 //!
-//! Columns, in any order and case: `subject`, `time`, `value`, `unit`; optional `matrix`, `assay`, `waking_time`.
+//! Columns, in any order and case: `subject`, `time`, `value`, `unit`; optional `matrix`, `assay`, `group`, `waking_time`.
 //! `time` is a local date-time, one with its offset, or decimal hours: one way for the whole table.
 //! `unit` is nmol/L, ug/dL or ng/mL, one for the whole table.
 
@@ -49,7 +49,7 @@ pub struct Sample {
     pub waking_h: Option<f64>,
 }
 
-/// The samples of one subject, one matrix and one assay, ascending in time.
+/// The samples of one subject, matrix, assay and group, ascending in time.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Series {
     /// Name or number of the subject as written.
@@ -58,6 +58,8 @@ pub struct Series {
     pub matrix: Matrix,
     /// Assay as written.
     pub assay: Option<String>,
+    /// Group of the subject as written.
+    pub group: Option<String>,
     /// Samples.
     pub samples: Vec<Sample>,
 }
@@ -79,7 +81,7 @@ impl Series {
 /// What one table holds.
 #[derive(Debug, Clone, PartialEq, Default)]
 pub struct Samples {
-    /// Series by subject, matrix and assay: what differs in one of them is never fitted together.
+    /// Series by subject, matrix, assay and group: what differs in one of them is never fitted together.
     pub series: Vec<Series>,
     /// Unit in which the values were written.
     pub unit: String,

@@ -1,9 +1,8 @@
 //! A table of subjects: each one's rhythm and saliva measures, and the population.
 
 use super::cosinor::{Cosinor, Design, Observation, Refusal, fit};
-use super::populations::{Population, Vector, population};
+use super::groups::{self, GroupComparison, GroupPopulation};
 use super::saliva::{Areas, RESPONSE_MIN, SalivaSample, SlopeKind, Timing, areas, slope, timing};
-use std::collections::BTreeMap;
 
 /// One sample of a subject.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -25,6 +24,8 @@ pub struct Series {
     pub subject: String,
     /// Matrix and assay in words: values of two specimens are never put together.
     pub specimen: String,
+    /// Group of the subject, where the table names any.
+    pub group: Option<String>,
     /// Samples, ascending in time.
     pub samples: Vec<SubjectSample>,
 }
@@ -47,6 +48,8 @@ pub struct SubjectRhythm {
     pub subject: String,
     /// Matrix and assay in words.
     pub specimen: String,
+    /// Group, where the table names any.
+    pub group: Option<String>,
     /// Samples used.
     pub n: usize,
     /// Of these below the limit of detection.
@@ -93,17 +96,10 @@ pub struct RhythmTable {
     pub plan: Plan,
     /// By subject.
     pub subjects: Vec<SubjectRhythm>,
-    /// Of the first period, one for every specimen of which at least three subjects have a fit.
-    pub populations: Vec<SpecimenPopulation>,
-}
-
-/// The population of one specimen.
-#[derive(Debug, Clone, PartialEq)]
-pub struct SpecimenPopulation {
-    /// Matrix and assay in words.
-    pub specimen: String,
-    /// Its subjects together.
-    pub population: Population,
+    /// Of the first period, one for every specimen and group of which at least three subjects have a fit.
+    pub populations: Vec<GroupPopulation>,
+    /// Groups held against each other, by specimen.
+    pub comparisons: Vec<GroupComparison>,
 }
 
 /// Rhythms of subjects and their population.
@@ -117,39 +113,19 @@ pub struct SpecimenPopulation {
 ///     .map(|(time_h, nmol_l)| SubjectSample { time_h, nmol_l, below_limit: false, waking_h: None })
 ///     .to_vec();
 /// let plan = Plan { design: Design::of(&[24.0]), log: true, reference_h: 0.0 };
-/// let series = Series { subject: "A".to_owned(), specimen: "saliva".to_owned(), samples };
+/// let series = Series { subject: "A".to_owned(), specimen: "saliva".to_owned(), group: None, samples };
 /// let table = analyse(&[series], plan);
 /// assert!(table.subjects[0].cosinor.is_ok() && table.populations.is_empty());
 /// ```
 pub fn analyse(series: &[Series], plan: Plan) -> RhythmTable {
     let subjects: Vec<SubjectRhythm> = series.iter().map(|series| one(series, &plan)).collect();
+    let populations = groups::populations(&subjects, plan.design.level);
     RhythmTable {
-        populations: populations(&subjects, plan.design.level),
+        comparisons: groups::comparisons(&subjects, &populations),
+        populations,
         subjects,
         plan,
     }
-}
-
-fn populations(subjects: &[SubjectRhythm], level: f64) -> Vec<SpecimenPopulation> {
-    let mut vectors: BTreeMap<&str, Vec<Vector>> = BTreeMap::new();
-    for subject in subjects {
-        if let Ok(cosinor) = &subject.cosinor {
-            vectors.entry(&subject.specimen).or_default().push(Vector {
-                mesor: cosinor.mesor,
-                beta: cosinor.components[0].beta,
-                gamma: cosinor.components[0].gamma,
-            });
-        }
-    }
-    vectors
-        .into_iter()
-        .filter_map(|(specimen, vectors)| {
-            Some(SpecimenPopulation {
-                specimen: specimen.to_owned(),
-                population: population(&vectors, level)?,
-            })
-        })
-        .collect()
 }
 
 fn one(series: &Series, plan: &Plan) -> SubjectRhythm {
@@ -169,6 +145,7 @@ fn one(series: &Series, plan: &Plan) -> SubjectRhythm {
     SubjectRhythm {
         subject: series.subject.clone(),
         specimen: series.specimen.clone(),
+        group: series.group.clone(),
         n: samples.len(),
         below_limit: samples.iter().filter(|s| s.below_limit).count(),
         days: days(samples).len(),

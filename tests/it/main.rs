@@ -18,6 +18,7 @@ mod physiology_options;
 mod pictures;
 mod properties;
 mod reference;
+mod rhythm_command;
 mod rosters;
 mod rules;
 mod samples;

@@ -1,9 +1,9 @@
-//! Cortisol samples in biological time: test persons of known rosters, and the command line of `sample` and `rhythm`.
+//! Cortisol samples in biological time: test persons of known rosters, and the command line of `sample`.
 //!
 //! Published: peak of serum cortisol 15.5 (11.7 to 20.6) ug/dL, that is 323 to 568 nmol/L (Debono 2009).
 
 use crate::rosters::{read, screening};
-use crate::scratch::{demo, file, messages, results, run};
+use crate::scratch::{demo, messages, results, run};
 use acroshift::biological_time::{NotPlaced, Placed, Specimen, Stated, Timing};
 use acroshift::intake::site;
 use acroshift::{SampleQuestion, SampleRefusal, Screening, sample};
@@ -314,56 +314,5 @@ fn the_command_keeps_to_its_audience_and_its_words() {
     );
     for words in ["unfit", "abnormal", "diagnosis of", "deficient"] {
         assert!(!text.contains(words), "{words}");
-    }
-}
-
-#[test]
-fn the_rhythm_command_fits_refuses_and_tells() {
-    let saliva = concat!(env!("CARGO_MANIFEST_DIR"), "/rosters/tern-quay-saliva.csv");
-    let fitted = run(&[
-        "rhythm",
-        saliva,
-        "--periods",
-        "24,12",
-        "--log",
-        "--format",
-        "json",
-    ]);
-    assert_eq!(fitted.status.code(), Some(0));
-    let json: serde_json::Value = serde_json::from_str(&results(&fitted)).unwrap();
-    assert_eq!(json["schema"], "acroshift.rhythm/1");
-    assert_eq!(json["subjects"].as_array().unwrap().len(), 3);
-    assert_eq!(json["populations"][0]["k"], 3);
-    let text = results(&run(&["rhythm", saliva]));
-    assert!(text.contains("waking response") && text.contains("weak sampling"));
-    let rows = results(&run(&["rhythm", saliva, "--format", "csv"]));
-    assert_eq!(rows.lines().count(), 4);
-    let refused = |name: &str, csv: &str| {
-        let path = file(name, "samples.csv", csv);
-        let output = run(&["rhythm", path.to_str().unwrap()]);
-        (
-            output.status.code().unwrap(),
-            results(&output),
-            messages(&output),
-        )
-    };
-    let head = "subject,time,value,unit\n";
-    let (code, out, _) = refused(
-        "three",
-        &format!("{head}A,7,9,nmol/L\nA,15,5,nmol/L\nA,23,2,nmol/L\n"),
-    );
-    assert!(code == 0 && out.contains("at least 4 are needed"), "{out}");
-    let mornings = format!("{head}A,8,9,nmol/L\nA,9,8,nmol/L\nA,10,8,nmol/L\nA,11,7,nmol/L\n");
-    let (_, out, _) = refused("mornings", &mornings);
-    assert!(out.contains("spread the samples"), "{out}");
-    for (name, csv, told) in [
-        ("negative", "A,7,-9,nmol/L", "M03"),
-        ("unit", "A,7,9,", "M01"),
-        ("mixed", "A,7,9,nmol/L\nA,9,9,ug/dL", "M02"),
-        ("twice", "A,7,9,nmol/L\nA,7,8,nmol/L", "M04"),
-    ] {
-        let (code, _, message) = refused(name, &format!("{head}{csv}\n"));
-        assert_eq!(code, 3, "{name}");
-        assert!(message.contains(told), "{name}: {message}");
     }
 }

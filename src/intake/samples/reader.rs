@@ -13,7 +13,7 @@ const SALIVA_QUESTIONED_NMOL_L: f64 = 120.0;
 const DAY_H: f64 = 24.0;
 
 /// Meanings of columns and the words that files use for them. Common practice, no source.
-const COLUMNS: [(&str, &[&str]); 7] = [
+const COLUMNS: [(&str, &[&str]); 8] = [
     (
         "subject",
         &["subject", "id", "person", "participant", "worker"],
@@ -23,6 +23,7 @@ const COLUMNS: [(&str, &[&str]); 7] = [
     ("unit", &["unit", "units"]),
     ("matrix", &["matrix", "specimen"]),
     ("assay", &["assay", "method"]),
+    ("group", &["group", "arm", "cohort"]),
     ("waking_time", &["waking_time", "waking", "wake_time"]),
 ];
 
@@ -34,8 +35,14 @@ pub(super) struct Reader<'a> {
     way: Option<Way>,
 }
 
-/// What is fitted together: subject, matrix and assay.
-type Key = (String, Matrix, Option<String>);
+/// What is fitted together.
+#[derive(Debug, Clone, PartialEq, Eq, PartialOrd, Ord)]
+struct Key {
+    subject: String,
+    matrix: Matrix,
+    assay: Option<String>,
+    group: Option<String>,
+}
 
 /// A row that could be used.
 struct ReadRow {
@@ -68,7 +75,7 @@ impl<'a> Reader<'a> {
                 Code::MissingColumn,
                 table.origin(&table.header, 0),
                 format!(
-                    "a table of samples needs {}; its columns are subject, time, value, unit and, if known, matrix, assay, waking_time",
+                    "a table of samples needs {}; its columns are subject, time, value, unit and, if known, matrix, assay, group, waking_time",
                     missing.join(", ")
                 ),
             ));
@@ -168,7 +175,13 @@ impl<'a> Reader<'a> {
             .is_some()
             .then(|| self.time(row, "waking_time"))
             .flatten();
-        let assay = self.cell(row, "assay").map(|(text, _)| text.to_owned());
+        let words = |column| self.cell(row, column).map(|(text, _)| text.to_owned());
+        let key = Key {
+            subject,
+            matrix,
+            assay: words("assay"),
+            group: words("group"),
+        };
         let place = |column| self.columns.get(column).copied().unwrap_or(0);
         let read = ReadRow {
             time,
@@ -178,7 +191,7 @@ impl<'a> Reader<'a> {
             origin: self.table.origin(row, place("time")),
             waking_origin: self.table.origin(row, place("waking_time")),
         };
-        Some(((subject, matrix, assay), read))
+        Some((key, read))
     }
 
     /// What was sampled; a word that is not known counts as not said, and is told.
@@ -257,7 +270,7 @@ impl<'a> Reader<'a> {
         Some((if below { value / 2.0 } else { value }, below))
     }
 
-    fn series(&mut self, (subject, matrix, assay): Key, mut rows: Vec<ReadRow>) -> Series {
+    fn series(&mut self, key: Key, mut rows: Vec<ReadRow>) -> Series {
         let origin = sample_time::origin(rows.iter().map(|row| row.time));
         let hours = |written: Written| written.hours_since(origin);
         rows.sort_by(|a, b| hours(a.time).total_cmp(&hours(b.time)));
@@ -268,7 +281,7 @@ impl<'a> Reader<'a> {
             if last.is_some_and(|last| (last.time_h - time_h).abs() < 1e-9) {
                 let message = format!(
                     "subject {:?} has two samples at one time; the first is used",
-                    short(&subject)
+                    short(&key.subject)
                 );
                 self.tell_at(Code::SampleTwice, row.origin.clone(), message);
                 continue;
@@ -288,9 +301,10 @@ impl<'a> Reader<'a> {
             });
         }
         Series {
-            subject,
-            matrix,
-            assay,
+            subject: key.subject,
+            matrix: key.matrix,
+            assay: key.assay,
+            group: key.group,
             samples,
         }
     }

@@ -70,6 +70,34 @@ impl SubjectRhythm {
     }
 }
 
+/// Mean increase after waking over several days.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct ResponseMean {
+    /// Days with a waking response.
+    pub days: usize,
+    /// Mean of their mean increases, nmol/L; none without a day.
+    pub mean_increase: Option<f64>,
+}
+
+impl SubjectRhythm {
+    /// The waking response over all days, and over those alone whose first sample came within 5 min of waking.
+    pub fn response_with_and_without(&self) -> (ResponseMean, ResponseMean) {
+        let over = |kept: &dyn Fn(&SalivaDay) -> bool| {
+            let days = self.saliva.iter().filter(|day| kept(day));
+            let increases: Vec<f64> = days
+                .filter_map(|day| Some(day.response?.mean_increase))
+                .collect();
+            let share = crate::numeric::quantile::ratio(1, increases.len().max(1));
+            ResponseMean {
+                days: increases.len(),
+                mean_increase: (!increases.is_empty())
+                    .then(|| increases.iter().sum::<f64>() * share),
+            }
+        };
+        (over(&|_| true), over(&|day| day.first == Timing::Kept))
+    }
+}
+
 /// Saliva measures of one day, with the timing of its first sample.
 #[derive(Debug, Clone, PartialEq)]
 pub struct SalivaDay {

@@ -130,3 +130,37 @@ fn groups_that_share_a_subject_or_are_too_small_are_not_compared() {
         .fold(String::new(), |text, row| text + row + "\n");
     assert!(compared(&small).contains("not compared: a group has fewer than 3 subjects"));
 }
+
+/// Two days on time with increases of 3 and 5, one day whose first sample came 20 min after waking with 1.
+#[test]
+fn the_waking_response_is_told_with_and_without_late_days() {
+    let mut csv = String::from("subject,time,value,unit,matrix,waking_time\n");
+    for (day, late, rise) in [(9, 0, 3.0), (10, 0, 5.0), (11, 20, 1.0)] {
+        for (after, value) in [(late, 8.0), (30, 8.0 + rise), (45, 8.0 + rise)] {
+            writeln!(
+                csv,
+                "A,2026-03-{day:02}T07:{after:02},{value},nmol/L,saliva,2026-03-{day:02}T07:00"
+            )
+            .unwrap();
+        }
+    }
+    let path = file("rhythm-late", "samples.csv", csv);
+    let json = run(&["rhythm", path.to_str().unwrap(), "--format", "json"]);
+    let json: Value = serde_json::from_str(&results(&json)).unwrap();
+    let subject = &json["subjects"][0];
+    let of = |key: &str| {
+        let response = &subject[key];
+        (
+            response["days"].as_u64().unwrap(),
+            response["mean_increase"].as_f64().unwrap(),
+        )
+    };
+    assert_eq!(of("response_on_time"), (2, 4.0));
+    let (days, mean) = of("response");
+    assert!(days == 3 && (mean - 3.0).abs() < 1e-9, "{days} {mean}");
+    let text = results(&run(&["rhythm", path.to_str().unwrap()]));
+    assert!(
+        text.contains("over 3 days: mean increase 3.00 nmol/L; over the 2 with"),
+        "{text}"
+    );
+}

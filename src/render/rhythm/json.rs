@@ -4,7 +4,7 @@ use super::{CAUTION, longest};
 use crate::rhythm::Component;
 use crate::rhythm::groups::{GroupComparison, GroupPopulation};
 use crate::rhythm::populations::Test;
-use crate::rhythm::subjects::{RhythmTable, SalivaDay, SubjectRhythm};
+use crate::rhythm::subjects::{ResponseMean, RhythmTable, SalivaDay, SubjectRhythm};
 use serde_json::{Map, Value, json as value};
 use std::io::{self, Write};
 
@@ -77,6 +77,9 @@ fn subject_value(table: &RhythmTable, subject: &SubjectRhythm) -> Value {
             );
         }
     }
+    let (all, on_time) = subject.response_with_and_without();
+    put("response", response_value(all));
+    put("response_on_time", response_value(on_time));
     put(
         "saliva",
         value!(subject.saliva.iter().map(saliva_value).collect::<Vec<_>>()),
@@ -105,6 +108,10 @@ fn component_value(table: &RhythmTable, component: &Component) -> Value {
         "f": component.f,
         "p": component.p,
     })
+}
+
+fn response_value(mean: ResponseMean) -> Value {
+    value!({ "days": mean.days, "mean_increase": mean.mean_increase })
 }
 
 fn saliva_value(day: &SalivaDay) -> Value {

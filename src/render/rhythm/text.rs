@@ -35,6 +35,7 @@ pub fn text(table: &RhythmTable, out: &mut impl Write) -> io::Result<()> {
         for day in &subject.saliva {
             text_of_saliva(day, out)?;
         }
+        text_of_timing(subject, out)?;
     }
     if table
         .subjects
@@ -233,6 +234,28 @@ fn text_of_saliva(day: &SalivaDay, out: &mut impl Write) -> io::Result<()> {
         writeln!(out, "    slopes, nmol/L per h: {}", slopes.join(", "))?;
     }
     Ok(())
+}
+
+/// Results with and without the days whose first sample came late, where these differ.
+fn text_of_timing(subject: &SubjectRhythm, out: &mut impl Write) -> io::Result<()> {
+    let (all, on_time) = subject.response_with_and_without();
+    let Some(mean) = all.mean_increase else {
+        return Ok(());
+    };
+    write!(
+        out,
+        "  waking response over {} days: mean increase {mean:.2} nmol/L",
+        all.days
+    )?;
+    match on_time.mean_increase {
+        _ if on_time.days == all.days => writeln!(out),
+        Some(mean) => writeln!(
+            out,
+            "; over the {} with a first sample within 5 min of waking: {mean:.2} nmol/L",
+            on_time.days
+        ),
+        None => writeln!(out, "; no day has a first sample within 5 min of waking"),
+    }
 }
 
 fn text_of_population(

@@ -26,12 +26,7 @@ const DAY: i64 = 1440;
 fn main() {
     println!("pacemaker alone, 16 lanes, 80 days, 10 changes of light a day");
     for set in InstructionSet::available() {
-        for name in [
-            PacemakerName::Hilaire2007,
-            PacemakerName::Forger1999,
-            PacemakerName::Jewett1999,
-            PacemakerName::Hannay2019,
-        ] {
+        for name in PacemakerName::ALL {
             let sets = ModelSets::with_pacemaker(name);
             let pacemaker = Pacemaker::on(set, &sets.pacemaker);
             let mut last = 0.0;

@@ -3,257 +3,17 @@
 //! One TOML file per publication, embedded in the program.
 //! Unknown keys are refused, so a set is always whole; numbers of two publications are never mixed.
 
+#[macro_use]
+mod set_macros;
+mod bounds;
+pub mod pacemaker_sets;
+
+pub use pacemaker_sets::{
+    ForgerSet, HannaySet, HilaireSet, JewettSet, PacemakerName, PacemakerReading, PacemakerSet,
+};
+
 use crate::units::Sourced;
 use serde::Deserialize;
-
-macro_rules! parameter_set {
-    ($(#[$about:meta])* $set:ident $(with $($shared:ident: $shared_type:ident),+)? { $($(#[$section_about:meta])* $section:ident: $type:ident { $($key:ident),* $(,)? })* }) => {
-        $(#[$about])*
-        #[derive(Debug, Clone, PartialEq, Deserialize)]
-        #[serde(deny_unknown_fields)]
-        pub struct $set {
-            /// Name of the set.
-            pub name: String,
-            /// Where the model was published.
-            pub publication: String,
-            $($(#[$section_about])* pub $section: $type,)*
-            $($(#[doc = "As in every set of its family."] pub $shared: $shared_type,)+)?
-        }
-
-        impl $set {
-            /// Every number of the set with the key under which it stands.
-            pub fn listed(&self) -> Vec<(String, &Sourced)> {
-                let own = vec![$($((
-                    concat!(stringify!($section), ".", stringify!($key)).to_owned(),
-                    &self.$section.$key,
-                ),)*)*];
-                own.into_iter()
-                    $($(.chain(self.$shared.listed(stringify!($shared))))+)?
-                    .collect()
-            }
-        }
-
-        $(
-            $(#[$section_about])*
-            #[derive(Debug, Clone, PartialEq, Deserialize)]
-            #[serde(deny_unknown_fields)]
-            #[expect(missing_docs, reason = "each number bears its unit and source in the file")]
-            pub struct $type { $(pub $key: Sourced,)* }
-        )*
-    };
-}
-
-macro_rules! shared_section {
-    ($(#[$about:meta])* $type:ident { $($key:ident),* $(,)? }) => {
-        $(#[$about])*
-        #[derive(Debug, Clone, PartialEq, Deserialize)]
-        #[serde(deny_unknown_fields)]
-        #[expect(missing_docs, reason = "each number bears its unit and source in the file")]
-        pub struct $type { $(pub $key: Sourced,)* }
-
-        impl $type {
-            fn listed(&self, section: &str) -> Vec<(String, &Sourced)> {
-                vec![$((format!("{section}.{}", stringify!($key)), &self.$key),)*]
-            }
-        }
-    };
-}
-
-shared_section! {
-    /// Where phase is read.
-    PacemakerMarker { angle, cbtmin_offset, dlmo_before_cbtmin, melatonin_duration, amplitude_floor }
-}
-
-shared_section! {
-    /// State at the first habitual midnight.
-    HabitualStart { first, second, n, habitual_days }
-}
-
-parameter_set! {
-    /// `forger1999`: pacemaker driven by light, simpler model.
-    ForgerSet with marker: PacemakerMarker, start: HabitualStart {
-        /// Light to drive.
-        process_l: ForgerLight { alpha0, beta, gain, exponent, i0 }
-        /// The oscillator.
-        process_p: ForgerOscillator { mu, k, f }
-    }
-}
-
-parameter_set! {
-    /// `jewett1999`: pacemaker driven by light, revised limit cycle.
-    JewettSet with marker: PacemakerMarker, start: HabitualStart {
-        /// Light to drive.
-        process_l: JewettLight { alpha0, beta, gain, exponent, i0 }
-        /// The oscillator.
-        process_p: JewettOscillator { mu, q, k, f }
-    }
-}
-
-parameter_set! {
-    /// `hilaire2007`: pacemaker driven by light and by sleep and waking.
-    HilaireSet with marker: PacemakerMarker, start: HabitualStart {
-        /// Light to drive.
-        process_l: HilaireLight { alpha0, beta, gain, exponent, i0, i1 }
-        /// The oscillator.
-        process_p: HilaireOscillator { mu, q, k, f }
-        /// Drive of sleep and waking.
-        non_photic: HilaireArousal { rho, awake_share, steepness }
-    }
-}
-
-parameter_set! {
-    /// `hannay2019`: macroscopic pacemaker, single population.
-    HannaySet with marker: PacemakerMarker, start: HabitualStart {
-        /// Light to drive.
-        process_l: HannayLight { alpha0, beta, gain, exponent, i0 }
-        /// The oscillator.
-        oscillator: HannayOscillator { coupling, gamma, beta1, a1, a2, beta_l1, beta_l2, sigma }
-    }
-}
-
-/// A pacemaker by the publication it comes from.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
-pub enum PacemakerName {
-    /// Light and sleep-wake drive; the default.
-    Hilaire2007,
-    /// Light drive, simpler model.
-    Forger1999,
-    /// Light drive, revised limit cycle.
-    Jewett1999,
-    /// Light drive, macroscopic; its clock times stand early.
-    Hannay2019,
-}
-
-impl PacemakerName {
-    /// Every pacemaker, the default first.
-    pub const ALL: [Self; 4] = [
-        Self::Hilaire2007,
-        Self::Forger1999,
-        Self::Jewett1999,
-        Self::Hannay2019,
-    ];
-
-    /// Its name in files and options.
-    pub fn word(self) -> &'static str {
-        match self {
-            Self::Hilaire2007 => "hilaire2007",
-            Self::Forger1999 => "forger1999",
-            Self::Jewett1999 => "jewett1999",
-            Self::Hannay2019 => "hannay2019",
-        }
-    }
-}
-
-/// The whole parameter set of one pacemaker.
-#[derive(Debug, Clone, PartialEq)]
-pub enum PacemakerSet {
-    /// `hilaire2007`.
-    Hilaire(HilaireSet),
-    /// `forger1999`.
-    Forger(ForgerSet),
-    /// `jewett1999`.
-    Jewett(JewettSet),
-    /// `hannay2019`.
-    Hannay(HannaySet),
-}
-
-/// Where phase is read and where habitual days begin, whatever the model.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub struct PacemakerReading {
-    /// Polar angle of the marker, radians.
-    pub angle_rad: f64,
-    /// `CBTmin` after the marker, minutes.
-    pub cbtmin_offset_min: f64,
-    /// DLMO before `CBTmin`, minutes.
-    pub dlmo_before_cbtmin_min: f64,
-    /// From DLMO to melatonin offset, minutes.
-    pub melatonin_duration_min: f64,
-    /// Share of the habitual amplitude below which phase is ill-defined.
-    pub amplitude_floor: f64,
-    /// First two state variables and `n` at the first habitual midnight.
-    pub start: [f64; 3],
-    /// Habitual days lived before the roster.
-    pub habitual_days: f64,
-}
-
-impl PacemakerReading {
-    fn new(marker: &PacemakerMarker, start: &HabitualStart) -> Self {
-        Self {
-            angle_rad: marker.angle.value.to_radians(),
-            cbtmin_offset_min: marker.cbtmin_offset.value * 60.0,
-            dlmo_before_cbtmin_min: marker.dlmo_before_cbtmin.value * 60.0,
-            melatonin_duration_min: marker.melatonin_duration.value * 60.0,
-            amplitude_floor: marker.amplitude_floor.value,
-            start: [start.first.value, start.second.value, start.n.value],
-            habitual_days: start.habitual_days.value,
-        }
-    }
-}
-
-impl PacemakerSet {
-    /// The embedded set of a pacemaker.
-    ///
-    /// # Panics
-    ///
-    /// Never in a built program: a test reads every file.
-    pub fn embedded(name: PacemakerName) -> Self {
-        match name {
-            PacemakerName::Hilaire2007 => Self::Hilaire(
-                toml::from_str(include_str!("parameters/hilaire2007.toml")).expect(READ_BY_A_TEST),
-            ),
-            PacemakerName::Forger1999 => Self::Forger(
-                toml::from_str(include_str!("parameters/forger1999.toml")).expect(READ_BY_A_TEST),
-            ),
-            PacemakerName::Jewett1999 => Self::Jewett(
-                toml::from_str(include_str!("parameters/jewett1999.toml")).expect(READ_BY_A_TEST),
-            ),
-            PacemakerName::Hannay2019 => Self::Hannay(
-                toml::from_str(include_str!("parameters/hannay2019.toml")).expect(READ_BY_A_TEST),
-            ),
-        }
-    }
-
-    /// Replaces the numbers by those of a file of the same model.
-    fn replace(&mut self, text: &str) -> Result<(), ParameterError> {
-        match self {
-            Self::Hilaire(set) => *set = whole(text)?,
-            Self::Forger(set) => *set = whole(text)?,
-            Self::Jewett(set) => *set = whole(text)?,
-            Self::Hannay(set) => *set = whole(text)?,
-        }
-        Ok(())
-    }
-
-    /// Where phase is read and where habitual days begin.
-    pub fn reading(&self) -> PacemakerReading {
-        match self {
-            Self::Hilaire(set) => PacemakerReading::new(&set.marker, &set.start),
-            Self::Forger(set) => PacemakerReading::new(&set.marker, &set.start),
-            Self::Jewett(set) => PacemakerReading::new(&set.marker, &set.start),
-            Self::Hannay(set) => PacemakerReading::new(&set.marker, &set.start),
-        }
-    }
-
-    /// Name of the set and its publication.
-    pub fn name_and_publication(&self) -> (&str, &str) {
-        match self {
-            Self::Hilaire(set) => (&set.name, &set.publication),
-            Self::Forger(set) => (&set.name, &set.publication),
-            Self::Jewett(set) => (&set.name, &set.publication),
-            Self::Hannay(set) => (&set.name, &set.publication),
-        }
-    }
-
-    /// Every number of the set with the key under which it stands.
-    pub fn listed(&self) -> Vec<(String, &Sourced)> {
-        match self {
-            Self::Hilaire(set) => set.listed(),
-            Self::Forger(set) => set.listed(),
-            Self::Jewett(set) => set.listed(),
-            Self::Hannay(set) => set.listed(),
-        }
-    }
-}
 
 const READ_BY_A_TEST: &str = "embedded parameter sets are read by a test";
 
@@ -504,98 +264,6 @@ impl ModelSets {
         self.check()
     }
 
-    /// Numbers that would make nonsense of every result are refused.
-    fn check(&self) -> Result<(), ParameterError> {
-        if let Some((set, key, number)) = self
-            .listed()
-            .into_iter()
-            .find(|(_, _, number)| !number.value.is_finite())
-        {
-            return Err(ParameterError::OutOfRange {
-                key: format!("{set} {key}"),
-                low: f64::MIN,
-                high: f64::MAX,
-                found: number.value,
-            });
-        }
-        let days = self.pacemaker.reading().habitual_days;
-        within("start.habitual_days", days, (10.0, 1000.0))?;
-        for (key, number, bounds) in self.bounded() {
-            within(key, number.value, bounds)?;
-        }
-        Ok(())
-    }
-
-    /// Numbers with the bounds within which the equations keep their sense. This program's choice, no source.
-    fn bounded(&self) -> Vec<(&'static str, &Sourced, (f64, f64))> {
-        let (scene, sleep, people) = (&self.light.scene, &self.sleep, &self.ensemble);
-        let rates = &self.cascade.rates;
-        let lux = (0.0, 200_000.0);
-        let minutes = (0.5, 1000.0);
-        vec![
-            (
-                "two-process homeostat.tau_rise",
-                &sleep.homeostat.tau_rise,
-                (1.0, 100.0),
-            ),
-            (
-                "two-process homeostat.tau_fall",
-                &sleep.homeostat.tau_fall,
-                (0.5, 50.0),
-            ),
-            (
-                "two-process effort.share_at_stake",
-                &sleep.effort.share_at_stake,
-                (0.05, 1.0),
-            ),
-            (
-                "two-process effort.shortest_sleep",
-                &sleep.effort.shortest_sleep,
-                (0.05, 4.0),
-            ),
-            ("ensemble period.sd", &people.period.sd, (0.0, 1.0)),
-            (
-                "ensemble habit.mid_sleep_sd",
-                &people.habit.mid_sleep_sd,
-                (0.0, 6.0),
-            ),
-            ("ensemble habit.need_sd", &people.habit.need_sd, (0.0, 2.0)),
-            (
-                "ensemble clipping.sd_units",
-                &people.clipping.sd_units,
-                (0.0, 5.0),
-            ),
-            (
-                "ensemble clipping.need_sd_units",
-                &people.clipping.need_sd_units,
-                (0.0, 5.0),
-            ),
-            (
-                "hpa-cascade rates.half_life_crh",
-                &rates.half_life_crh,
-                minutes,
-            ),
-            (
-                "hpa-cascade rates.half_life_acth",
-                &rates.half_life_acth,
-                minutes,
-            ),
-            (
-                "hpa-cascade rates.half_life_cortisol",
-                &rates.half_life_cortisol,
-                minutes,
-            ),
-            ("ensemble period.mean", &people.period.mean, (23.0, 25.5)),
-            ("ensemble habit.need", &people.habit.need, (4.0, 12.0)),
-            ("light scene.home_day", &scene.home_day, lux),
-            ("light scene.home_evening", &scene.home_evening, lux),
-            ("light scene.work", &scene.work, lux),
-            ("light scene.commute_day", &scene.commute_day, lux),
-            ("light scene.commute_dark", &scene.commute_dark, lux),
-            ("light eye.factor", &self.light.eye.factor, (0.0, 1.0)),
-        ]
-    }
-
     /// Every number in use: set, key, value with unit and source.
     pub fn listed(&self) -> Vec<(String, String, &Sourced)> {
         let sets = [
@@ -626,19 +294,6 @@ impl ModelSets {
             (&self.ensemble.name, &self.ensemble.publication),
         ]
     }
-}
-
-/// A number within its bounds, or the error that names them.
-fn within(key: &str, found: f64, (low, high): (f64, f64)) -> Result<(), ParameterError> {
-    if (low..=high).contains(&found) {
-        return Ok(());
-    }
-    Err(ParameterError::OutOfRange {
-        key: key.to_owned(),
-        low,
-        high,
-        found,
-    })
 }
 
 #[cfg(test)]
@@ -678,12 +333,7 @@ mod tests {
 
     #[test]
     fn every_number_has_a_unit_and_a_source() {
-        for name in [
-            PacemakerName::Hilaire2007,
-            PacemakerName::Forger1999,
-            PacemakerName::Jewett1999,
-            PacemakerName::Hannay2019,
-        ] {
+        for name in PacemakerName::ALL {
             let sets = ModelSets::with_pacemaker(name);
             let list = sets.listed();
             assert!(list.len() > 60, "only {} numbers are listed", list.len());

@@ -9,28 +9,10 @@ use crate::physiology::free_cortisol::Binding;
 use crate::physiology::pacemaker::LANES;
 use crate::physiology::parameters::{BindingSet, SampleBandSet};
 use crate::physiology::{CORTISOL_STEP_MIN, Engine, Member, MemberTrack, ModelSets, SleepEpisode};
+use crate::samples::Matrix;
 use crate::timeline::stress::hours_at_night;
 use crate::timeline::{DutySpan, MeasuredLight, Timeline};
 use crate::units::{Minute, minutes_to_hours};
-
-/// What was or will be sampled.
-#[derive(Debug, Clone, Copy, PartialEq, Eq)]
-pub enum Specimen {
-    /// Total cortisol.
-    Serum,
-    /// Free cortisol in saliva.
-    Saliva,
-}
-
-impl Specimen {
-    /// In words.
-    pub fn word(self) -> &'static str {
-        match self {
-            Self::Serum => "serum",
-            Self::Saliva => "saliva",
-        }
-    }
-}
 
 /// A person's biological time, where it is known from outside: it takes the place of the model's.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -91,7 +73,7 @@ pub struct Standing {
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct Placed {
     /// What was sampled.
-    pub specimen: Specimen,
+    pub matrix: Matrix,
     /// Where the sample stands.
     pub standing: Standing,
     /// Range for one value of this person.
@@ -152,7 +134,7 @@ pub struct Frame<'a> {
 pub fn place(
     frame: Frame<'_>,
     at: Minute,
-    specimen: Specimen,
+    matrix: Matrix,
     stated: Option<Stated>,
 ) -> Result<Placed, NotPlaced> {
     let lived = Lived::of(frame, at, stated)?;
@@ -161,10 +143,10 @@ pub fn place(
         && lived.tracks.iter().any(|track| track.awake_h(at) > 0.0);
     let stress = crate::physiology::stress_spans(frame.timeline);
     Ok(Placed {
-        specimen,
+        matrix,
         standing,
-        band: sample_band(frame, at, specimen, &lived.tracks, &stress, near_waking),
-        day_worker: sample_band(frame, at, specimen, &lived.day_worker, &[], false),
+        band: sample_band(frame, at, matrix, &lived.tracks, &stress, near_waking),
+        day_worker: sample_band(frame, at, matrix, &lived.day_worker, &[], false),
         near_waking,
     })
 }
@@ -382,7 +364,7 @@ fn timing(hold: usize, of: usize, bands: &SampleBandSet) -> Timing {
 fn sample_band(
     frame: Frame<'_>,
     at: Minute,
-    specimen: Specimen,
+    matrix: Matrix,
     tracks: &[MemberTrack],
     stress: &[StressSpan],
     near_waking: bool,
@@ -390,15 +372,15 @@ fn sample_band(
     let binding = Binding::new(&BindingSet::embedded());
     let logs: Vec<f64> = totals_at(frame.sets, tracks, stress, at)
         .into_iter()
-        .map(|total| match specimen {
-            Specimen::Serum => total,
-            Specimen::Saliva => binding.saliva(total),
+        .map(|total| match matrix {
+            Matrix::Serum => total,
+            Matrix::Saliva => binding.saliva(total),
         })
         .map(libm::log)
         .collect();
-    let (between, within) = match specimen {
-        Specimen::Serum => (&frame.bands.serum.between, &frame.bands.serum.within),
-        Specimen::Saliva => (&frame.bands.saliva.between, &frame.bands.saliva.within),
+    let (between, within) = match matrix {
+        Matrix::Serum => (&frame.bands.serum.between, &frame.bands.serum.within),
+        Matrix::Saliva => (&frame.bands.saliva.between, &frame.bands.saliva.within),
     };
     let further = if near_waking {
         frame.bands.waking.further.value

@@ -21,6 +21,8 @@ pub mod diagnostic;
 
 pub mod roster;
 
+pub mod samples;
+
 pub mod intake;
 
 pub mod timeline;
@@ -40,7 +42,7 @@ pub mod report;
 pub mod render;
 
 use assessment::{AssessmentInput, Criteria, Pack};
-use biological_time::{NotPlaced, Placed, Specimen, Stated};
+use biological_time::{NotPlaced, Placed, Stated};
 use intake::site::Site;
 use physiology::light::LightScenes;
 use physiology::parameters::SampleBandSet;
@@ -48,6 +50,7 @@ use physiology::{ModelSets, PacemakerName, Sampling};
 use report::pacemakers::Beside;
 use report::{Audience, ReportInput, RunFacts, ScreenReport};
 use roster::{Roster, WorkerId};
+use samples::Matrix;
 use timeline::{Axis, HabitFile, LightLogs, SiteScene, Timeline};
 
 /// How a roster is screened.
@@ -223,7 +226,7 @@ pub struct SampleQuestion {
     /// Local date and time of the workplace.
     pub at: chrono::NaiveDateTime,
     /// What was sampled.
-    pub specimen: Specimen,
+    pub matrix: Matrix,
     /// `CBTmin` and sleep, where they are known from outside.
     pub stated: Option<Stated>,
     /// Are the next comparable times asked for?
@@ -280,7 +283,7 @@ pub fn sample(
         bands: &SampleBandSet::embedded(),
     };
     let at = axis.minute(timeline::civil::instant_of(axis.zone, question.at));
-    let placed = biological_time::place(frame, at, question.specimen, question.stated)?;
+    let placed = biological_time::place(frame, at, question.matrix, question.stated)?;
     if !question.next {
         return Ok((placed, None));
     }

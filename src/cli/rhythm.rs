@@ -4,11 +4,11 @@ use super::arguments::{RhythmFormat, RhythmOptions};
 use super::{Ending, Stop, output};
 use acroshift::diagnostic::has_errors;
 use acroshift::intake::Input;
-use acroshift::intake::samples::{self, Samples};
+use acroshift::intake::samples;
 use acroshift::render::{rhythm as render, terminal};
 use acroshift::report::diagnostics;
 use acroshift::rhythm::Design;
-use acroshift::rhythm::subjects::{Plan, Series, SubjectSample, analyse};
+use acroshift::rhythm::subjects::{Plan, analyse};
 use anyhow::Context;
 use std::io::{Read, Write};
 
@@ -33,7 +33,7 @@ pub(super) fn run(options: &RhythmOptions) -> Result<Ending, Stop> {
     if unusable || samples.series.is_empty() {
         return Ok(Ending::Input);
     }
-    let table = analyse(&series(&samples), plan);
+    let table = analyse(&samples.series, plan);
     let mut results = output::results();
     match options.format {
         RhythmFormat::Text => render::text(&table, &mut results),
@@ -70,29 +70,4 @@ fn read(options: &RhythmOptions) -> Result<Vec<u8>, Stop> {
         return Ok(bytes);
     }
     std::fs::read(&options.samples).map_err(told)
-}
-
-fn series(samples: &Samples) -> Vec<Series> {
-    let of = |series: &samples::Series| {
-        series
-            .samples
-            .iter()
-            .map(|sample| SubjectSample {
-                time_h: sample.time_h,
-                nmol_l: sample.nmol_l,
-                below_limit: sample.below_limit,
-                waking_h: sample.waking_h,
-            })
-            .collect()
-    };
-    samples
-        .series
-        .iter()
-        .map(|series| Series {
-            subject: series.subject.clone(),
-            specimen: series.specimen(),
-            group: series.group.clone(),
-            samples: of(series),
-        })
-        .collect()
 }

@@ -2,7 +2,7 @@
 
 use super::arguments::{AudienceName, Format, MatrixName, SampleOptions};
 use super::{Ending, Stop, files, output};
-use acroshift::biological_time::{Specimen, Stated};
+use acroshift::biological_time::Stated;
 use acroshift::diagnostic::has_errors;
 use acroshift::intake::clock_text::{self, Moment};
 use acroshift::intake::{Reading, samples, zone_name};
@@ -10,6 +10,7 @@ use acroshift::physiology::ModelSets;
 use acroshift::render::sample::{self as render, SampleReport};
 use acroshift::render::terminal;
 use acroshift::report::{Audience, diagnostics};
+use acroshift::samples::Matrix;
 use acroshift::{SampleQuestion, Screening, sample};
 use anyhow::Context;
 use chrono::{NaiveDateTime, Timelike};
@@ -102,9 +103,9 @@ fn question(options: &SampleOptions) -> Result<SampleQuestion, Stop> {
     Ok(SampleQuestion {
         worker: options.worker.clone(),
         at: moment(&options.at)?,
-        specimen: match options.matrix {
-            MatrixName::Serum => Specimen::Serum,
-            MatrixName::Saliva => Specimen::Saliva,
+        matrix: match options.matrix {
+            MatrixName::Serum => Matrix::Serum,
+            MatrixName::Saliva => Matrix::Saliva,
         },
         stated,
         next: options.next_window,

@@ -9,74 +9,11 @@ mod sample_time;
 
 use super::{Input, table_of};
 use crate::diagnostic::{self, Diagnostic};
+use crate::samples::Series;
 use reader::Reader;
 
 /// nmol/L in one ug/dL of cortisol (molar mass 362.46 g/mol).
 const NMOL_PER_UG_DL: f64 = 27.59;
-
-/// What was sampled.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
-pub enum Matrix {
-    /// Saliva: free cortisol.
-    Saliva,
-    /// Serum or plasma: total cortisol.
-    Serum,
-    /// Not said.
-    Unknown,
-}
-
-impl Matrix {
-    /// In words.
-    pub fn word(self) -> &'static str {
-        match self {
-            Self::Saliva => "saliva",
-            Self::Serum => "serum",
-            Self::Unknown => "not said",
-        }
-    }
-}
-
-/// One sample.
-#[derive(Debug, Clone, PartialEq)]
-pub struct Sample {
-    /// Hours since the midnight that begins the first date of the series (or as written, where times are decimal hours).
-    pub time_h: f64,
-    /// Concentration, nmol/L; half the limit where it lies below it.
-    pub nmol_l: f64,
-    /// Was it below the limit of detection?
-    pub below_limit: bool,
-    /// Waking of that day, in the same hours.
-    pub waking_h: Option<f64>,
-}
-
-/// The samples of one subject, matrix, assay and group, ascending in time.
-#[derive(Debug, Clone, PartialEq)]
-pub struct Series {
-    /// Name or number of the subject as written.
-    pub subject: String,
-    /// What was sampled.
-    pub matrix: Matrix,
-    /// Assay as written.
-    pub assay: Option<String>,
-    /// Group of the subject as written.
-    pub group: Option<String>,
-    /// Samples.
-    pub samples: Vec<Sample>,
-}
-
-impl Series {
-    /// Matrix and assay in words.
-    pub fn specimen(&self) -> String {
-        let matrix = match self.matrix {
-            Matrix::Unknown => "matrix not said",
-            known => known.word(),
-        };
-        match &self.assay {
-            Some(assay) => format!("{matrix}, {assay}"),
-            None => format!("{matrix}, assay not said"),
-        }
-    }
-}
 
 /// What one table holds.
 #[derive(Debug, Clone, PartialEq, Default)]

@@ -52,9 +52,9 @@ fn saliva_band(band: SampleBand) -> String {
 /// Whatever the writer refuses.
 pub fn text(report: &SampleReport, out: &mut impl Write) -> io::Result<()> {
     let placed = &report.placed;
-    let shown = |b: SampleBand| match placed.specimen {
-        crate::biological_time::Specimen::Serum => band(b),
-        crate::biological_time::Specimen::Saliva => saliva_band(b),
+    let shown = |b: SampleBand| match placed.matrix {
+        crate::samples::Matrix::Serum => band(b),
+        crate::samples::Matrix::Saliva => saliva_band(b),
     };
     writeln!(out, "{}", FIXED_WORDS[0])?;
     writeln!(
@@ -62,7 +62,7 @@ pub fn text(report: &SampleReport, out: &mut impl Write) -> io::Result<()> {
         "\n{}, {}, {}",
         report.worker,
         report.at,
-        placed.specimen.word()
+        placed.matrix.word()
     )?;
     writeln!(
         out,
@@ -170,7 +170,7 @@ pub fn json(report: &SampleReport, version: &str, out: &mut impl Write) -> io::R
         "tool": { "name": "acroshift", "version": version },
         "worker": report.worker,
         "at": report.at,
-        "matrix": placed.specimen.word(),
+        "matrix": placed.matrix.word(),
         "sample_band": band(placed.band),
         "day_worker": band(placed.day_worker),
         "measured": report.measured,

@@ -3,32 +3,7 @@
 use super::cosinor::{Cosinor, Design, Observation, Refusal, fit};
 use super::groups::{self, GroupComparison, GroupPopulation};
 use super::saliva::{Areas, RESPONSE_MIN, SalivaSample, SlopeKind, Timing, areas, slope, timing};
-
-/// One sample of a subject.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub struct SubjectSample {
-    /// Hours since midnight of the first date.
-    pub time_h: f64,
-    /// nmol/L.
-    pub nmol_l: f64,
-    /// Below the limit of detection.
-    pub below_limit: bool,
-    /// Waking of that day, in the same hours.
-    pub waking_h: Option<f64>,
-}
-
-/// What was measured of one subject in one specimen.
-#[derive(Debug, Clone, PartialEq)]
-pub struct Series {
-    /// Name of the subject.
-    pub subject: String,
-    /// Matrix and assay in words: values of two specimens are never put together.
-    pub specimen: String,
-    /// Group of the subject, where the table names any.
-    pub group: Option<String>,
-    /// Samples, ascending in time.
-    pub samples: Vec<SubjectSample>,
-}
+use crate::samples::{Sample, Series};
 
 /// What is asked of a table.
 #[derive(Debug, Clone, PartialEq)]
@@ -135,13 +110,14 @@ pub struct RhythmTable {
 /// # Example
 ///
 /// ```
-/// use acroshift::rhythm::subjects::{analyse, Plan, Series, SubjectSample};
+/// use acroshift::rhythm::subjects::{analyse, Plan};
+/// use acroshift::samples::{Matrix, Sample, Series};
 /// use acroshift::rhythm::Design;
-/// let samples: Vec<SubjectSample> = [(7.0, 14.0), (11.0, 7.0), (15.0, 5.0), (19.0, 3.0), (23.0, 2.0)]
-///     .map(|(time_h, nmol_l)| SubjectSample { time_h, nmol_l, below_limit: false, waking_h: None })
+/// let samples: Vec<Sample> = [(7.0, 14.0), (11.0, 7.0), (15.0, 5.0), (19.0, 3.0), (23.0, 2.0)]
+///     .map(|(time_h, nmol_l)| Sample { time_h, nmol_l, below_limit: false, waking_h: None })
 ///     .to_vec();
 /// let plan = Plan { design: Design::of(&[24.0]), log: true, reference_h: 0.0 };
-/// let series = Series { subject: "A".to_owned(), specimen: "saliva".to_owned(), group: None, samples };
+/// let series = Series { subject: "A".to_owned(), matrix: Some(Matrix::Saliva), assay: None, group: None, samples };
 /// let table = analyse(&[series], plan);
 /// assert!(table.subjects[0].cosinor.is_ok() && table.populations.is_empty());
 /// ```
@@ -172,7 +148,7 @@ fn one(series: &Series, plan: &Plan) -> SubjectRhythm {
         .collect();
     SubjectRhythm {
         subject: series.subject.clone(),
-        specimen: series.specimen.clone(),
+        specimen: series.specimen(),
         group: series.group.clone(),
         n: samples.len(),
         below_limit: samples.iter().filter(|s| s.below_limit).count(),
@@ -186,19 +162,19 @@ fn one(series: &Series, plan: &Plan) -> SubjectRhythm {
 }
 
 /// Samples by waking where it is given, else by date.
-fn days(samples: &[SubjectSample]) -> Vec<Vec<SubjectSample>> {
-    let day = |sample: &SubjectSample| {
+fn days(samples: &[Sample]) -> Vec<Vec<Sample>> {
+    let day = |sample: &Sample| {
         let start = sample.waking_h.unwrap_or(sample.time_h);
         (start / 24.0).floor()
     };
     samples
         .chunk_by(|a, b| (day(a) - day(b)).abs() < 0.5)
-        .map(<[SubjectSample]>::to_vec)
+        .map(<[Sample]>::to_vec)
         .collect()
 }
 
 #[expect(clippy::cast_possible_truncation, reason = "a day number is small")]
-fn saliva_day(samples: &[SubjectSample]) -> Option<SalivaDay> {
+fn saliva_day(samples: &[Sample]) -> Option<SalivaDay> {
     let waking_h = samples.iter().find_map(|sample| sample.waking_h)?;
     let after: Vec<SalivaSample> = samples
         .iter()

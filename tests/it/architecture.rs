@@ -12,11 +12,13 @@ fn allowed() -> BTreeMap<&'static str, &'static [&'static str]> {
         ("source", &[][..]),
         ("diagnostic", &["source"][..]),
         ("roster", &["units", "source"][..]),
+        ("samples", &[][..]),
         // Civil time is settled in one place, which intake asks for the instant of a local time.
         (
             "intake",
             &[
                 "roster",
+                "samples",
                 "diagnostic",
                 "source",
                 "units",
@@ -26,10 +28,10 @@ fn allowed() -> BTreeMap<&'static str, &'static [&'static str]> {
         ),
         ("timeline", &["roster", "numeric", "units"][..]),
         ("physiology", &["timeline", "numeric", "units"][..]),
-        ("rhythm", &["numeric", "units"][..]),
+        ("rhythm", &["samples", "numeric", "units"][..]),
         (
             "biological_time",
-            &["timeline", "physiology", "numeric", "units"][..],
+            &["samples", "timeline", "physiology", "numeric", "units"][..],
         ),
         (
             "validation",
@@ -67,6 +69,7 @@ fn allowed() -> BTreeMap<&'static str, &'static [&'static str]> {
                 "validation",
                 "rhythm",
                 "biological_time",
+                "samples",
                 "numeric",
                 "units",
             ][..],

@@ -4,8 +4,9 @@
 
 use crate::rosters::{read, screening};
 use crate::scratch::{demo, messages, results, run};
-use acroshift::biological_time::{NotPlaced, Placed, Specimen, Stated, Timing};
+use acroshift::biological_time::{NotPlaced, Placed, Stated, Timing};
 use acroshift::intake::site;
+use acroshift::samples::Matrix;
 use acroshift::{SampleQuestion, SampleRefusal, Screening, sample};
 use chrono::{Days, NaiveDate, NaiveDateTime};
 use std::fmt::Write;
@@ -42,11 +43,11 @@ fn ask(letters: &str, question: &SampleQuestion, site_file: &str) -> Result<Plac
     sample(&read.roster.unwrap(), &screening, question).map(|(placed, _)| placed)
 }
 
-fn question(at: NaiveDateTime, specimen: Specimen) -> SampleQuestion {
+fn question(at: NaiveDateTime, matrix: Matrix) -> SampleQuestion {
     SampleQuestion {
         worker: "P".to_owned(),
         at,
-        specimen,
+        matrix,
         stated: None,
         next: false,
     }
@@ -58,7 +59,7 @@ const DAYS: &str = "DDDDD..DDDDD..DDDDD";
 #[test]
 fn the_day_worker_s_band_holds_the_published_range_and_is_never_narrow() {
     // A free Sunday in the second half.
-    let nine = ask(DAYS, &question(at(13, 9, 0), Specimen::Serum), "").unwrap();
+    let nine = ask(DAYS, &question(at(13, 9, 0), Matrix::Serum), "").unwrap();
     assert!(
         nine.band.p05 <= 280.0 && nine.band.p95 >= 550.0,
         "{:?}",
@@ -67,7 +68,7 @@ fn the_day_worker_s_band_holds_the_published_range_and_is_never_narrow() {
     assert_eq!(nine.standing.timing, Timing::Inside);
     let mut peak = nine.band;
     for hour in 0..24 {
-        let placed = ask(DAYS, &question(at(12, hour, 0), Specimen::Serum), "").unwrap();
+        let placed = ask(DAYS, &question(at(12, hour, 0), Matrix::Serum), "").unwrap();
         let band = placed.band;
         assert!(
             band.p05 <= 0.75 * band.median && band.p95 >= 1.33 * band.median,
@@ -84,13 +85,13 @@ fn the_day_worker_s_band_holds_the_published_range_and_is_never_narrow() {
 fn a_worker_after_one_night_is_not_comparable() {
     let letters = "DDDDD..DDDN...DD";
     // 09:00 after the night that began on Thursday of the second week.
-    let placed = ask(letters, &question(at(11, 9, 0), Specimen::Serum), "").unwrap();
+    let placed = ask(letters, &question(at(11, 9, 0), Matrix::Serum), "").unwrap();
     assert_eq!(placed.standing.nights_before, 1);
     assert!(!placed.standing.comparable);
     // Four days later, on a free morning, it is again.
     let placed = ask(
         "DDDDD..DDDN....DD",
-        &question(at(14, 9, 0), Specimen::Serum),
+        &question(at(14, 9, 0), Matrix::Serum),
         "",
     )
     .unwrap();
@@ -105,7 +106,7 @@ fn a_stated_clock_moves_the_band_as_the_reference_scenario_says() {
             cbtmin_h: 13.0,
             sleep_h: (8.0, 16.0),
         }),
-        ..question(at(12, hour, 0), Specimen::Serum)
+        ..question(at(12, hour, 0), Matrix::Serum)
     };
     // S3: the day worker nine hours later: 59.3 at 09:00 (00:00 of S0), 396.6 at 18:00 (09:00 of S0).
     let morning = ask(DAYS, &stated(9), "").unwrap();
@@ -138,7 +139,7 @@ fn a_stated_clock_moves_the_band_as_the_reference_scenario_says() {
 fn fourteen_long_nights_without_daylight_put_the_morning_outside() {
     let letters = "DDDDD...LLLLLLLLLLLLLL....";
     let site = "morning_daylight = false\ntask_light_lux = 500";
-    let placed = ask(letters, &question(at(22, 9, 0), Specimen::Serum), site).unwrap();
+    let placed = ask(letters, &question(at(22, 9, 0), Matrix::Serum), site).unwrap();
     assert_eq!(
         placed.standing.timing,
         Timing::Outside,
@@ -156,7 +157,7 @@ fn a_sample_beyond_the_roster_is_refused_even_with_a_stated_clock() {
             cbtmin_h: 4.0,
             sleep_h: (23.0, 7.0),
         }),
-        ..question(at(day, hour, 0), Specimen::Serum)
+        ..question(at(day, hour, 0), Matrix::Serum)
     };
     // The last day duty is that of day 18.
     assert!(ask(DAYS, &stated(18, 23), "").is_ok());
@@ -191,7 +192,7 @@ fn a_stated_clock_keeps_local_hours_over_the_change_to_summer_time() {
                     .unwrap()
                     .and_hms_opt(9, 0, 0)
                     .unwrap(),
-                Specimen::Serum,
+                Matrix::Serum,
             )
         };
         let (placed, _) = sample(&roster, &screening(&[]), &question).unwrap();
@@ -212,7 +213,7 @@ fn a_stated_clock_has_next_windows_of_its_own() {
             sleep_h: (23.0, 7.0),
         }),
         next: true,
-        ..question(at(3, 0, 0), Specimen::Serum)
+        ..question(at(3, 0, 0), Matrix::Serum)
     };
     let read = read(&roster(DAYS), "UTC");
     let (_, spans) = sample(&read.roster.unwrap(), &screening(&[]), &asked).unwrap();
@@ -224,7 +225,7 @@ fn a_stated_clock_has_next_windows_of_its_own() {
 
 #[test]
 fn saliva_has_a_band_of_its_own() {
-    let placed = ask(DAYS, &question(at(13, 9, 0), Specimen::Saliva), "").unwrap();
+    let placed = ask(DAYS, &question(at(13, 9, 0), Matrix::Saliva), "").unwrap();
     // About 15 nmol/L of parotid saliva at 08:00.
     assert!(
         (8.0..22.0).contains(&placed.band.median),
@@ -236,25 +237,25 @@ fn saliva_has_a_band_of_its_own() {
 
 #[test]
 fn a_roster_that_tells_too_little_is_refused() {
-    let early = ask(DAYS, &question(at(3, 9, 0), Specimen::Serum), "");
+    let early = ask(DAYS, &question(at(3, 9, 0), Matrix::Serum), "");
     assert!(matches!(
         early,
         Err(SampleRefusal::NotPlaced(NotPlaced::ShortHistory { .. }))
     ));
     let permanent = "NNNNN..NNNNN..NNNNN..NNNNN..NNNNN..NNNNN";
-    let nights = ask(permanent, &question(at(37, 9, 0), Specimen::Serum), "");
+    let nights = ask(permanent, &question(at(37, 9, 0), Matrix::Serum), "");
     assert!(matches!(
         nights,
         Err(SampleRefusal::NotPlaced(NotPlaced::NoStart { .. }))
     ));
-    let outside = ask(DAYS, &question(at(300, 9, 0), Specimen::Serum), "");
+    let outside = ask(DAYS, &question(at(300, 9, 0), Matrix::Serum), "");
     assert!(matches!(
         outside,
         Err(SampleRefusal::NotPlaced(NotPlaced::OutsideRoster))
     ));
     let unknown = SampleQuestion {
         worker: "Q".to_owned(),
-        ..question(at(13, 9, 0), Specimen::Serum)
+        ..question(at(13, 9, 0), Matrix::Serum)
     };
     assert!(matches!(
         ask(DAYS, &unknown, ""),

@@ -1,9 +1,10 @@
 //! Rows of a table of samples to series.
 
 use super::sample_time::{self, Way, Written};
-use super::{Matrix, Sample, Samples, Series, factor_of};
+use super::{Samples, factor_of};
 use crate::diagnostic::{Code, Diagnostic};
 use crate::intake::table::{Row, Table, short};
+use crate::samples::{Matrix, Sample, Series};
 use crate::source::Origin;
 use std::collections::BTreeMap;
 
@@ -39,7 +40,7 @@ pub(super) struct Reader<'a> {
 #[derive(Debug, Clone, PartialEq, Eq, PartialOrd, Ord)]
 struct Key {
     subject: String,
-    matrix: Matrix,
+    matrix: Option<Matrix>,
     assay: Option<String>,
     group: Option<String>,
 }
@@ -195,7 +196,7 @@ impl<'a> Reader<'a> {
     }
 
     /// What was sampled; a word that is not known counts as not said, and is told.
-    fn matrix(&mut self, row: &Row, nmol_l: f64) -> Matrix {
+    fn matrix(&mut self, row: &Row, nmol_l: f64) -> Option<Matrix> {
         let text = self
             .cell(row, "matrix")
             .map_or(String::new(), |(text, _)| text.to_lowercase());
@@ -205,18 +206,18 @@ impl<'a> Reader<'a> {
                     "{nmol_l:.0} nmol/L lies in the range of serum; is it saliva, and is the unit right?"
                 );
                 self.tell(Code::SampleMatrix, row, "value", message);
-                Matrix::Saliva
+                Some(Matrix::Saliva)
             }
-            "saliva" => Matrix::Saliva,
-            "serum" | "plasma" => Matrix::Serum,
-            "" => Matrix::Unknown,
+            "saliva" => Some(Matrix::Saliva),
+            "serum" | "plasma" => Some(Matrix::Serum),
+            "" => None,
             other => {
                 let message = format!(
                     "{:?} is no matrix that is read, and counts as not said; write saliva, serum or plasma",
                     short(other)
                 );
                 self.tell(Code::SampleMatrixUnknown, row, "matrix", message);
-                Matrix::Unknown
+                None
             }
         }
     }
